@@ -1,0 +1,4 @@
+export * from './accounts';
+export * from './review';
+export * from './studies';
+export * from './trees';
