@@ -52,7 +52,13 @@ export const handle: Handle = async ({ event, resolve }) => {
   return response;
 };
 
-const LOST_DATABASE = new Set(['ECONNREFUSED', 'PROTOCOL_CONNECTION_LOST', 'ECONNRESET', 'ETIMEDOUT', 'ER_SERVER_SHUTDOWN']);
+const LOST_DATABASE = new Set([
+  'ECONNREFUSED',
+  'PROTOCOL_CONNECTION_LOST',
+  'ECONNRESET',
+  'ETIMEDOUT',
+  'ER_SERVER_SHUTDOWN'
+]);
 
 function databaseAway(error: unknown): boolean {
   for (let e: unknown = error, depth = 0; e && depth < 5; depth++) {
@@ -64,7 +70,8 @@ function databaseAway(error: unknown): boolean {
 }
 
 export const handleError: HandleServerError = ({ error, event, status, message }) => {
-  if (status === 404) return { message: 'There is nothing at this address.', cure: 'Check the address, or go back to the desk.' };
+  if (status === 404)
+    return { message: 'There is nothing at this address.', cure: 'Check the address, or go back to the desk.' };
   const reference = randomUUID().slice(0, 8);
   log.error({ reference, err: error, path: event.url.pathname }, message);
   if (databaseAway(error))

@@ -46,7 +46,15 @@ export const PERMISSIONS: Readonly<Record<Role, ReadonlySet<Action>>> = {
   guest: new Set<Action>(['study.read', 'report.approved']),
   reviewer: new Set<Action>([...READ, 'remark.write', 'remark.resolve', 'review.decide', 'report.draft']),
   annotator: new Set<Action>(ANNOTATE),
-  lead: new Set<Action>([...ANNOTATE, 'group.edit', 'member.manage', 'audit.read', 'study.delete', 'study.share', 'review.decide'])
+  lead: new Set<Action>([
+    ...ANNOTATE,
+    'group.edit',
+    'member.manage',
+    'audit.read',
+    'study.delete',
+    'study.share',
+    'review.decide'
+  ])
 };
 
 /** @returns whether the role may do the action at all */

@@ -12,7 +12,10 @@ const window = z.object({
 
 /** What a new tree of the group starts from. Null means: the program's documented default. */
 export const groupDefaultsSchema = z.object({
-  tolerances: z.partialRecord(z.enum(['orbitrap', 'ft-icr', 'tof', 'quadrupole', 'ion-trap', 'sector', 'unknown']), window),
+  tolerances: z.partialRecord(
+    z.enum(['orbitrap', 'ft-icr', 'tof', 'quadrupole', 'ion-trap', 'sector', 'unknown']),
+    window
+  ),
   elements: z.string().max(200).nullable(),
   adducts: z.array(z.string().max(60)).max(40),
   /** reviewers whose approval a revision needs. */

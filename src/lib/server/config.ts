@@ -11,7 +11,11 @@ const schema = z.object({
   RIVENMARK_MAIL_FOLDER: z.string().optional(),
   RIVENMARK_WORKERS: z.coerce.number().int().min(0).max(32).default(2),
   /** bytes */
-  RIVENMARK_MAX_UPLOAD: z.coerce.number().int().positive().default(2 * 1024 ** 3),
+  RIVENMARK_MAX_UPLOAD: z.coerce
+    .number()
+    .int()
+    .positive()
+    .default(2 * 1024 ** 3),
   /** milliseconds between heartbeats of a running job; a job silent for five of them counts as dead */
   RIVENMARK_HEARTBEAT: z.coerce.number().int().min(50).default(2000),
   S3_ENDPOINT: z.string().optional(),
@@ -34,7 +38,9 @@ export function config(): Config {
   const parsed = schema.safeParse(process.env);
   if (!parsed.success) {
     const wrong = parsed.error.issues.map((issue) => `${issue.path.join('.')}: ${issue.message}`).join('; ');
-    throw new Error(`The environment of the server is not usable: ${wrong}. Start it with \`npm start\`, or set these.`);
+    throw new Error(
+      `The environment of the server is not usable: ${wrong}. Start it with \`npm start\`, or set these.`
+    );
   }
   return (cached = parsed.data);
 }

@@ -14,7 +14,10 @@ export function parse<T extends z.ZodType>(schema: T, value: unknown): z.output<
 }
 
 /** JSON body of an API request. @throws ServiceError invalid when it is no JSON or does not fit the schema */
-export async function parseJson<T extends z.ZodType>(event: Pick<RequestEvent, 'request'>, schema: T): Promise<z.output<T>> {
+export async function parseJson<T extends z.ZodType>(
+  event: Pick<RequestEvent, 'request'>,
+  schema: T
+): Promise<z.output<T>> {
   let body: unknown;
   try {
     body = await event.request.json();

@@ -26,11 +26,19 @@ export interface TreeAccess extends StudyAccess {
 }
 
 const nowhere = (what: string) =>
-  new ServiceError('not-found', `There is no such ${what}, or it is not open to you.`, 'Check the address, or ask the lead of the group.');
+  new ServiceError(
+    'not-found',
+    `There is no such ${what}, or it is not open to you.`,
+    'Check the address, or ask the lead of the group.'
+  );
 
 function permit(role: Role, action: Action): void {
   if (!may(role, action))
-    throw new ServiceError('forbidden', `Your role in this group (${role}) does not allow this.`, 'Ask the lead of the group.');
+    throw new ServiceError(
+      'forbidden',
+      `Your role in this group (${role}) does not allow this.`,
+      'Ask the lead of the group.'
+    );
 }
 
 function signedIn(actor: Actor | null): asserts actor is Actor {
@@ -75,7 +83,12 @@ export async function requireStudy(actor: Actor | null, studyId: string, action:
 }
 
 /** The run; where a study id is given the run must belong to it. @throws ServiceError unauthenticated, not-found, forbidden */
-export async function requireRun(actor: Actor | null, runId: string, action: Action, studyId?: string): Promise<RunAccess> {
+export async function requireRun(
+  actor: Actor | null,
+  runId: string,
+  action: Action,
+  studyId?: string
+): Promise<RunAccess> {
   signedIn(actor);
   const [row] = await database()
     .select({ run: runs, study: studies, group: groups, role: memberships.role })
@@ -84,13 +97,19 @@ export async function requireRun(actor: Actor | null, runId: string, action: Act
     .innerJoin(groups, eq(groups.id, studies.groupId))
     .innerJoin(memberships, and(eq(memberships.groupId, studies.groupId), eq(memberships.userId, actor.id)))
     .where(eq(runs.id, runId));
-  if (!row || (studyId && row.study.id !== studyId) || !(await opened(row.role, row.study.id, actor.id))) throw nowhere('run');
+  if (!row || (studyId && row.study.id !== studyId) || !(await opened(row.role, row.study.id, actor.id)))
+    throw nowhere('run');
   permit(row.role, action);
   return row;
 }
 
 /** The tree; where a study id is given the tree must belong to it. @throws ServiceError unauthenticated, not-found, forbidden */
-export async function requireTree(actor: Actor | null, treeId: string, action: Action, studyId?: string): Promise<TreeAccess> {
+export async function requireTree(
+  actor: Actor | null,
+  treeId: string,
+  action: Action,
+  studyId?: string
+): Promise<TreeAccess> {
   signedIn(actor);
   const [row] = await database()
     .select({ tree: trees, study: studies, group: groups, role: memberships.role })
@@ -99,7 +118,8 @@ export async function requireTree(actor: Actor | null, treeId: string, action: A
     .innerJoin(groups, eq(groups.id, studies.groupId))
     .innerJoin(memberships, and(eq(memberships.groupId, studies.groupId), eq(memberships.userId, actor.id)))
     .where(eq(trees.id, treeId));
-  if (!row || (studyId && row.study.id !== studyId) || !(await opened(row.role, row.study.id, actor.id))) throw nowhere('tree');
+  if (!row || (studyId && row.study.id !== studyId) || !(await opened(row.role, row.study.id, actor.id)))
+    throw nowhere('tree');
   permit(row.role, action);
   return row;
 }

@@ -1,4 +1,14 @@
-import { boolean, datetime, index, int, json, mysqlEnum, mysqlTable, primaryKey, varchar } from 'drizzle-orm/mysql-core';
+import {
+  boolean,
+  datetime,
+  index,
+  int,
+  json,
+  mysqlEnum,
+  mysqlTable,
+  primaryKey,
+  varchar
+} from 'drizzle-orm/mysql-core';
 import type { GroupDefaults } from '$lib/schema/group';
 import { createdAt, exact, instant, uuid } from './columns';
 

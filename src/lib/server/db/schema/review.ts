@@ -1,4 +1,15 @@
-import { bigint, double, index, int, json, mysqlEnum, mysqlTable, text, uniqueIndex, varchar } from 'drizzle-orm/mysql-core';
+import {
+  bigint,
+  double,
+  index,
+  int,
+  json,
+  mysqlEnum,
+  mysqlTable,
+  text,
+  uniqueIndex,
+  varchar
+} from 'drizzle-orm/mysql-core';
 import { groups, users } from './accounts';
 import { createdAt, exact, instant, longtext, uuid } from './columns';
 import { studies } from './studies';
@@ -68,7 +79,10 @@ export const reviewRequests = mysqlTable(
     decidedAt: instant('decided_at'),
     createdAt: createdAt()
   },
-  (t) => [uniqueIndex('review_requests_pair').on(t.revisionId, t.reviewerId), index('review_requests_user').on(t.reviewerId)]
+  (t) => [
+    uniqueIndex('review_requests_pair').on(t.revisionId, t.reviewerId),
+    index('review_requests_user').on(t.reviewerId)
+  ]
 );
 
 /** Read-only link to one approved tree or one study, for a reader without an account. */
