@@ -45,6 +45,12 @@ function signedIn(actor: Actor | null): asserts actor is Actor {
   if (!actor) throw new ServiceError('unauthenticated', 'You are not signed in.', 'Sign in and try again.');
 }
 
+/** For what any signed-in person may do, on their own behalf. @throws ServiceError unauthenticated */
+export function requireUser<T extends Actor>(actor: T | null): T {
+  signedIn(actor);
+  return actor;
+}
+
 /** Guests see only the studies that were opened to them; for everybody else membership of the group suffices. */
 async function opened(role: Role, studyId: string, userId: string): Promise<boolean> {
   if (role !== 'guest') return true;
