@@ -1,0 +1,296 @@
+/** Cuts a stream of bytes into the head of the file and its spectra, without reading more than the tags. */
+import { CoreError } from '../errors';
+import { ByteWindow } from './byte-window';
+import type { ReadLimits, StreamingHash } from './options';
+import { named, nextMarkup, type Markup } from './tags';
+
+export interface HeadPiece {
+  kind: 'head';
+  xml: string;
+}
+
+export interface SpectrumPiece {
+  kind: 'spectrum';
+  /** absolute offset and length in the (uncompressed) stream. */
+  byte: number;
+  length: number;
+  /** the spectrum's XML without the text of its `binary` elements. */
+  xml: string;
+  /** base64 text of each `binary` element in order; valid until the next `push`. */
+  binaries: Uint8Array[];
+}
+
+/** A spectrum whose end tag is missing although the file goes on. */
+export interface BrokenPiece {
+  kind: 'broken';
+  byte: number;
+}
+
+export type Piece = HeadPiece | SpectrumPiece | BrokenPiece;
+
+/** What is known when the stream has ended. */
+export interface CutEnd {
+  /** the root element was closed. */
+  closed: boolean;
+  /** the mzML element was closed, so that no spectrum can be missing. */
+  mzmlClosed: boolean;
+  /** offset of a spectrum that was begun but not ended. */
+  openSpectrum: number | null;
+  chromatograms: number;
+  declaredChecksum: string | null;
+  computedChecksum: string | null;
+  bytes: number;
+}
+
+const is = {
+  mzml: named('mzML'),
+  indexed: named('indexedmzML'),
+  spectrum: named('spectrum'),
+  spectrumList: named('spectrumList'),
+  chromatogram: named('chromatogram'),
+  chromatogramList: named('chromatogramList'),
+  run: named('run'),
+  binary: named('binary'),
+  checksum: named('fileChecksum')
+};
+
+type State = 'root' | 'head' | 'body' | 'spectrum';
+
+export class Cutter {
+  private readonly window = new ByteWindow();
+  private state: State = 'root';
+  private scan = 0;
+  private start = 0;
+  private depth = 0;
+  private hashed = 0;
+  private hash: StreamingHash | null;
+  private decoder = new TextDecoder('utf-8');
+  /** alternating: begin and end of each binary text, absolute. */
+  private ranges: number[] = [];
+  private openBinary = -1;
+  private plainRoot = false;
+  private checksumFrom = -1;
+  private readonly result: CutEnd = {
+    closed: false,
+    mzmlClosed: false,
+    openSpectrum: null,
+    chromatograms: 0,
+    declaredChecksum: null,
+    computedChecksum: null,
+    bytes: 0
+  };
+
+  constructor(
+    private readonly limits: ReadLimits,
+    hash: StreamingHash | null
+  ) {
+    this.hash = hash;
+  }
+
+  /** Takes the next bytes of the stream; call `next` until it returns null before pushing again. */
+  push(piece: Uint8Array): void {
+    this.hashTo(this.scan);
+    this.window.push(piece, Math.min(this.scan, this.state === 'body' ? this.scan : this.start));
+  }
+
+  /**
+   * The next complete piece, or null when more bytes are needed.
+   * @throws CoreError `not-mzml`, `doctype` or `limit`.
+   */
+  next(): Piece | null {
+    for (;;) {
+      const { bytes, base } = this.window;
+      const found = nextMarkup(bytes, this.scan - base);
+      if (typeof found === 'number') {
+        this.scan = base + found;
+        this.checkSize();
+        return null;
+      }
+      if (this.checksumFrom >= 0) this.takeChecksum(base + found.start);
+      this.scan = base + found.end;
+      const piece = found.kind === 'other' ? null : this.take(bytes, found);
+      if (piece) return piece;
+    }
+  }
+
+  /** Call once after the last `push`. */
+  finish(): CutEnd {
+    if (this.state === 'root') throw this.notMzml();
+    if (this.state === 'spectrum') this.result.openSpectrum = this.start;
+    this.result.bytes = this.window.end;
+    return this.result;
+  }
+
+  /** True while the head has not been handed out. */
+  get inHead(): boolean {
+    return this.state === 'root' || this.state === 'head';
+  }
+
+  private take(bytes: Uint8Array, tag: Markup): Piece | null {
+    if (tag.kind === 'start' && ++this.depth > this.limits.depth) {
+      throw new CoreError('limit', `Elements are nested more than ${this.limits.depth} deep`, this.place(tag.start));
+    }
+    if (tag.kind === 'end') this.depth--;
+    if (this.state === 'spectrum') return this.inSpectrum(bytes, tag);
+    if (this.state === 'body') return this.inBody(bytes, tag);
+    return this.beforeBody(bytes, tag);
+  }
+
+  private beforeBody(bytes: Uint8Array, tag: Markup): Piece | null {
+    if (this.state === 'root') {
+      this.plainRoot = is.mzml(bytes, tag);
+      if (tag.kind === 'end' || (!this.plainRoot && !is.indexed(bytes, tag))) throw this.notMzml(bytes, tag);
+      this.decoder = declaredDecoder(bytes.subarray(0, tag.start));
+      this.state = 'head';
+      return null;
+    }
+    const ends = tag.kind === 'end' && (is.run(bytes, tag) || is.mzml(bytes, tag));
+    const begins = is.spectrumList(bytes, tag) || is.spectrum(bytes, tag) || is.chromatogramList(bytes, tag);
+    if (!ends && !begins) return null;
+    const xml = this.decoder.decode(bytes.subarray(0, tag.start));
+    this.state = 'body';
+    // The tag that ends the head is looked at again as part of the body.
+    this.scan = this.window.base + tag.start;
+    this.depth -= tag.kind === 'start' ? 1 : tag.kind === 'end' ? -1 : 0;
+    return { kind: 'head', xml };
+  }
+
+  private inBody(bytes: Uint8Array, tag: Markup): Piece | null {
+    if (tag.kind === 'end') {
+      if (is.mzml(bytes, tag)) this.result.mzmlClosed = true;
+      if (is.indexed(bytes, tag) || (this.plainRoot && is.mzml(bytes, tag))) this.result.closed = true;
+    } else if (is.spectrum(bytes, tag)) {
+      this.beginSpectrum(tag);
+      if (tag.kind === 'empty') return this.endSpectrum(tag);
+    } else if (is.chromatogram(bytes, tag)) {
+      this.result.chromatograms++;
+    } else if (is.checksum(bytes, tag) && tag.kind === 'start') {
+      const end = this.window.base + tag.end;
+      this.hashTo(end);
+      this.result.computedChecksum = this.hash?.hex() ?? null;
+      this.hash = null;
+      this.checksumFrom = end;
+    }
+    return null;
+  }
+
+  private beginSpectrum(tag: Markup): void {
+    this.state = 'spectrum';
+    this.start = this.window.base + tag.start;
+    this.ranges = [];
+    this.openBinary = -1;
+  }
+
+  private inSpectrum(bytes: Uint8Array, tag: Markup): Piece | null {
+    const { base } = this.window;
+    if (tag.kind === 'end') {
+      if (is.spectrum(bytes, tag)) return this.endSpectrum(tag);
+      if (is.binary(bytes, tag) && this.openBinary >= 0) {
+        this.ranges.push(this.openBinary, base + tag.start);
+        this.openBinary = -1;
+      }
+      if (is.spectrumList(bytes, tag) || is.run(bytes, tag)) return this.breakOff(tag);
+    } else if (is.binary(bytes, tag)) {
+      if (tag.kind === 'empty') this.ranges.push(base + tag.end, base + tag.end);
+      else this.openBinary = base + tag.end;
+    } else if (is.spectrum(bytes, tag)) {
+      return this.breakOff(tag);
+    }
+    return null;
+  }
+
+  /** The spectrum never ended: give it up and look at the tag again from outside. */
+  private breakOff(tag: Markup): Piece {
+    const byte = this.start;
+    this.state = 'body';
+    this.scan = this.window.base + tag.start;
+    this.depth = Math.min(this.depth, 4);
+    return { kind: 'broken', byte };
+  }
+
+  private endSpectrum(tag: Markup): SpectrumPiece {
+    this.state = 'body';
+    const { window, ranges, start } = this;
+    const end = window.base + tag.end;
+    let xml = '';
+    let from = start;
+    const binaries: Uint8Array[] = [];
+    for (let i = 0; i < ranges.length; i += 2) {
+      xml += this.decoder.decode(window.slice(from, ranges[i]));
+      binaries.push(window.slice(ranges[i], ranges[i + 1]));
+      from = ranges[i + 1];
+    }
+    xml += this.decoder.decode(window.slice(from, end));
+    if (xml.length > this.limits.spectrumXmlBytes) {
+      throw new CoreError('limit', `The XML of one spectrum is larger than ${this.limits.spectrumXmlBytes} bytes`, {
+        byte: start,
+        scan: null
+      });
+    }
+    return { kind: 'spectrum', byte: start, length: end - start, xml, binaries };
+  }
+
+  private checkSize(): void {
+    const held = this.window.end - this.start;
+    if (this.inHead && held > this.limits.headBytes) {
+      throw new CoreError('limit', `More than ${this.limits.headBytes} bytes come before the first spectrum`, {
+        byte: 0,
+        scan: null
+      });
+    }
+    if (this.state === 'spectrum' && held > this.limits.spectrumBytes) {
+      throw new CoreError('limit', `One spectrum is larger than ${this.limits.spectrumBytes} bytes`, {
+        byte: this.start,
+        scan: null
+      });
+    }
+    const waiting = this.window.end - this.scan;
+    if (this.state === 'body' && waiting > this.limits.spectrumXmlBytes) {
+      throw new CoreError('limit', `One tag is longer than ${this.limits.spectrumXmlBytes} bytes`, this.place(0));
+    }
+  }
+
+  private takeChecksum(end: number): void {
+    const text = this.decoder.decode(this.window.slice(this.checksumFrom, end)).trim();
+    this.result.declaredChecksum = text.slice(0, 64).toLowerCase();
+    this.checksumFrom = -1;
+  }
+
+  private hashTo(end: number): void {
+    if (this.hash && end > this.hashed) {
+      this.hash.update(this.window.slice(this.hashed, end));
+      this.hashed = end;
+    }
+  }
+
+  private place(index: number): { byte: number; scan: null } {
+    return { byte: this.window.base + index, scan: null };
+  }
+
+  private notMzml(bytes?: Uint8Array, tag?: Markup): CoreError {
+    const name =
+      bytes && tag
+        ? new TextDecoder().decode(bytes.subarray(tag.nameFrom, Math.min(tag.nameTo, tag.nameFrom + 40)))
+        : '';
+    const what = name ? `Its root element is "${name}"` : 'It holds no XML element';
+    return new CoreError(
+      'not-mzml',
+      `The file is not mzML. ${what}`,
+      { byte: tag?.start ?? 0, scan: null },
+      'Convert the original data to mzML 1.1 and use that file.'
+    );
+  }
+}
+
+/** A decoder for the encoding that the XML declaration names; UTF-8 when there is none. */
+function declaredDecoder(prolog: Uint8Array): TextDecoder {
+  const text = new TextDecoder('iso-8859-1').decode(prolog.subarray(0, 400));
+  const label = /<\?xml[^>]*\bencoding\s*=\s*["']([^"']{1,40})["']/.exec(text)?.[1] ?? 'utf-8';
+  // UTF-16 was transcoded before it came here; the declaration still names it.
+  const name = /^(utf-?16|ucs-?2|iso-10646)/i.test(label) ? 'utf-8' : label;
+  try {
+    return new TextDecoder(name);
+  } catch {
+    throw new CoreError('xml', `The text encoding "${label}" is not known`, { byte: 0, scan: null });
+  }
+}

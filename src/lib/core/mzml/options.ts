@@ -1,0 +1,79 @@
+/** What a caller can pass to the reader, and the defaults. */
+import { inflateWithPako } from './inflate';
+
+/** Bounds against hostile files; all are counts of bytes or elements of the uncompressed stream. */
+export interface ReadLimits {
+  /** everything before the first spectrum. */
+  headBytes: number;
+  /** one spectrum, its base64 text included. */
+  spectrumBytes: number;
+  /** XML of one spectrum without its base64 text. */
+  spectrumXmlBytes: number;
+  /** nesting of elements. */
+  depth: number;
+  /** points of one array. */
+  arrayPoints: number;
+  /** inflated size of a whole gz file. */
+  gzipBytes: number;
+  /** inflated / compressed size of a gz file, judged after the first 10 MB. */
+  gzipRatio: number;
+}
+
+export const DEFAULT_LIMITS: ReadLimits = {
+  headBytes: 32 * 2 ** 20,
+  spectrumBytes: 256 * 2 ** 20,
+  spectrumXmlBytes: 16 * 2 ** 20,
+  depth: 60,
+  arrayPoints: 20_000_000,
+  gzipBytes: 64 * 2 ** 30,
+  gzipRatio: 200
+};
+
+/** Streaming SHA-1 of the caller's platform, e.g. a thin wrapper of `node:crypto`. */
+export interface StreamingHash {
+  update(bytes: Uint8Array): void;
+  /** lower-case hexadecimal digits. */
+  hex(): string;
+}
+
+/**
+ * Inflates one zlib stream. Must stop and throw once more than `maxLength` bytes come out; `expectedLength` is what the
+ * file declares, a hint for the size of the buffer.
+ */
+export type Inflate = (bytes: Uint8Array, expectedLength: number, maxLength: number) => Uint8Array;
+
+export interface ReadOptions {
+  /** zlib of one array; default: pako. */
+  inflate?: Inflate;
+  /** gzip of the whole file (all members); default: pako. */
+  gunzip?: (source: AsyncIterable<Uint8Array>) => AsyncIterable<Uint8Array>;
+  /** makes the hash that `fileChecksum` is compared with; without it the checksum is not verified. */
+  sha1?: () => StreamingHash;
+  /** false: spectra are handed out as written; default true: profile spectra are centroided. */
+  centroid?: boolean;
+  /** false: arrays are not decoded and peak lists are empty (metadata only); default true. */
+  peaks?: boolean;
+  /** called after every piece of input: bytes of the source taken so far, and scans read. */
+  onProgress?: (bytes: number, scans: number) => void;
+  /** asked after every piece of input; true ends the reading with a CoreError `cancelled`. */
+  isCancelled?: () => boolean;
+  limits?: Partial<ReadLimits>;
+}
+
+/** Options with every default filled in. */
+export interface ReadSettings {
+  inflate: Inflate;
+  centroid: boolean;
+  peaks: boolean;
+  limits: ReadLimits;
+}
+
+/** Fills in the defaults. */
+export function readSettings(options: ReadOptions): ReadSettings {
+  return {
+    inflate: options.inflate ?? inflateWithPako,
+    centroid: options.centroid ?? true,
+    peaks: options.peaks ?? true,
+    limits: { ...DEFAULT_LIMITS, ...options.limits }
+  };
+}
