@@ -42,11 +42,18 @@ export function sampledShare(peaks: PeakList): number | null {
   return judged.filter((i) => looksSampled(peaks, i)).length / judged.length;
 }
 
+/** True when most points lie farther apart than any sampling of a profile. */
+function isSparse(mz: Float64Array): boolean {
+  let wide = 0;
+  for (let i = 1; i < mz.length; i++) if (mz[i] - mz[i - 1] > 2 * WIDEST_SAMPLING) wide++;
+  return wide * 2 > mz.length - 1;
+}
+
 /** Decides between centroid and profile; the flag of the file is overruled only by a clear picture of the data. */
 export function isCentroided(peaks: PeakList, flag: boolean | null): boolean {
   const share = sampledShare(peaks);
   if (flag === true) return !(share !== null && share >= 0.8 && peaks.mz.length >= 50);
-  if (flag === false) return share !== null && share <= 0.1 && peaks.mz.length >= 20;
+  if (flag === false) return isSparse(peaks.mz) || (share !== null && share <= 0.1 && peaks.mz.length >= 20);
   return share === null || share < 0.5;
 }
 

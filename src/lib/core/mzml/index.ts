@@ -3,3 +3,4 @@ export { readMzml, readRun, type MzmlEvent, type RunStart, type RunSummary } fro
 export { DEFAULT_LIMITS, type Inflate, type ReadLimits, type ReadOptions, type StreamingHash } from './options';
 export { parseFilterString, type FilterStage, type FilterString } from './filter-string';
 export { centroid, isCentroided } from './centroid';
+export { WarningCollector } from './warnings';
