@@ -1,0 +1,1 @@
+export { correctedMz, fitMassError, median, predictedError, type MassErrorFit, type MassErrorPoint } from './fit';
