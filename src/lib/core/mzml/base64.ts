@@ -69,3 +69,20 @@ function decodeRest(text: Uint8Array, start: number, end: number, out: Uint8Arra
   if (digits === 3) out[n++] = (word >> 2) & 255;
   return out.subarray(0, n);
 }
+
+const ALPHABET = Uint8Array.from('ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz0123456789+/', (c) =>
+  c.charCodeAt(0)
+);
+
+/** Encodes bytes; the result is ASCII text as bytes. */
+export function encodeBase64(bytes: Uint8Array): Uint8Array {
+  const out = new Uint8Array(Math.ceil(bytes.length / 3) * 4).fill(61);
+  let n = 0;
+  for (let i = 0; i < bytes.length; i += 3) {
+    const left = Math.min(3, bytes.length - i);
+    const word = (bytes[i] << 16) | ((bytes[i + 1] ?? 0) << 8) | (bytes[i + 2] ?? 0);
+    for (let k = 0; k <= left; k++) out[n + k] = ALPHABET[(word >> (18 - 6 * k)) & 63];
+    n += 4;
+  }
+  return out;
+}

@@ -4,3 +4,4 @@ export { DEFAULT_LIMITS, type Inflate, type ReadLimits, type ReadOptions, type S
 export { parseFilterString, type FilterStage, type FilterString } from './filter-string';
 export { centroid, isCentroided } from './centroid';
 export { WarningCollector } from './warnings';
+export { writeMzml, type RunToWrite, type ScanToWrite, type WriteOptions } from './write';
