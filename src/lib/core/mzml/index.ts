@@ -4,4 +4,5 @@ export { DEFAULT_LIMITS, type Inflate, type ReadLimits, type ReadOptions, type S
 export { parseFilterString, type FilterStage, type FilterString } from './filter-string';
 export { centroid, isCentroided } from './centroid';
 export { WarningCollector } from './warnings';
-export { writeMzml, type RunToWrite, type ScanToWrite, type WriteOptions } from './write';
+export { writeMzml, type RunToWrite, type WriteOptions } from './write';
+export type { ScanToWrite } from './write-spectrum';
