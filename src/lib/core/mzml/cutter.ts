@@ -90,7 +90,9 @@ export class Cutter {
   /** Takes the next bytes of the stream; call `next` until it returns null before pushing again. */
   push(piece: Uint8Array): void {
     this.hashTo(this.scan);
-    this.window.push(piece, Math.min(this.scan, this.state === 'body' ? this.scan : this.start));
+    const begun = this.state === 'body' ? this.scan : this.start;
+    const keep = this.checksumFrom < 0 ? begun : Math.min(begun, this.checksumFrom);
+    this.window.push(piece, Math.min(this.scan, keep));
   }
 
   /**
