@@ -8,7 +8,7 @@ const WORTH_A_POOL = 2;
 
 /** Workers run TypeScript through the same loader as this process, found from here and not from the working folder. */
 function startWorker(): Worker {
-  return new Worker(new URL('./worker.ts', import.meta.url), { execArgv: ['--import', import.meta.resolve('tsx')] });
+  return new Worker(new URL('./worker-entry.mjs', import.meta.url));
 }
 
 /** Holds results until all earlier ones are there. */
