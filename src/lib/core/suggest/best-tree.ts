@@ -29,25 +29,29 @@ export interface TreeSolution {
 }
 
 export interface SolveLimits {
-  /** branch-and-bound steps after which the best tree so far is returned. */
-  maxSteps: number;
+  /** vertices that branch and bound may look at before the best tree so far is returned. */
+  maxWork: number;
 }
 
 const EPSILON = 1e-9;
+/** Sweeps of the local search; each improves the score, so few are needed. */
+const MAX_ROUNDS = 30;
 
-/** Solves by local search, then proves or improves by branch and bound within the step limit. Deterministic. */
+/** Solves by local search, then proves or improves by branch and bound within the work limit. Deterministic. */
 export function solveTree(colours: number, vertices: readonly TreeVertex[], limits: SolveLimits): TreeSolution {
   for (const v of vertices) v.edges.sort((a, b) => b.weight - a.weight || a.from - b.from);
   const search = new TreeSearch(colours, vertices);
   search.improveFrom(search.optimisticStart());
   search.improveFrom(search.rootStart());
-  const bound = search.branch(limits.maxSteps);
+  const bound = search.branch(limits.maxWork);
   const { chosen, parent, score } = search.result();
   return { chosen, parent, score, proven: bound <= score + EPSILON, bound: Math.max(bound, score) };
 }
 
 class TreeSearch {
   private readonly byColour: number[][];
+  /** vertices that a vertex can be the parent of, with the edge weight. */
+  private readonly children: { to: number; weight: number }[][];
   private best: Int32Array;
   private bestScore = 0;
 
@@ -56,7 +60,11 @@ class TreeSearch {
     private readonly vertices: readonly TreeVertex[]
   ) {
     this.byColour = Array.from({ length: colours }, () => []);
-    vertices.forEach((v, i) => this.byColour[v.colour].push(i));
+    this.children = vertices.map(() => []);
+    vertices.forEach((v, to) => {
+      this.byColour[v.colour].push(to);
+      for (const { from, weight } of v.edges) if (from >= 0) this.children[from].push({ to, weight });
+    });
     this.best = new Int32Array(colours).fill(-1);
   }
 
@@ -92,36 +100,90 @@ class TreeSearch {
     return -Infinity;
   }
 
-  private total(chosen: Int32Array): number {
-    let sum = 0;
-    for (let c = 0; c < this.colours; c++) sum += this.earn(chosen[c], chosen);
-    return sum;
+  /** Best edge of a vertex to the root or a chosen parent, leaving one vertex out. */
+  private bestEdge(vertex: number, chosen: Int32Array, without: number): TreeEdge | null {
+    for (const edge of this.vertices[vertex].edges) {
+      if (edge.from < 0 || (edge.from !== without && chosen[this.vertices[edge.from].colour] === edge.from))
+        return edge;
+    }
+    return null;
   }
 
   /** Changes one colour at a time while the whole score grows. */
   improveFrom(chosen: Int32Array): void {
-    let score = this.total(chosen);
-    for (let changed = true; changed;) {
+    const weight = new Float64Array(this.colours);
+    const parent = new Int32Array(this.colours);
+    const refresh = () => {
+      for (let c = 0; c < this.colours; c++) {
+        const edge = chosen[c] < 0 ? null : this.bestEdge(chosen[c], chosen, -1);
+        weight[c] = edge?.weight ?? 0;
+        parent[c] = edge?.from ?? -1;
+      }
+    };
+    refresh();
+    for (let changed = true, rounds = 0; changed && rounds < MAX_ROUNDS; rounds++) {
       changed = false;
       for (let c = 0; c < this.colours; c++) {
         const before = chosen[c];
-        let keep = before;
-        for (const option of [-1, ...this.byColour[c]]) {
-          if (option === keep) continue;
-          chosen[c] = option;
-          const value = this.total(chosen);
-          if (value > score + EPSILON) [keep, score, changed] = [option, value, true];
+        const kept =
+          before < 0 ? 0 : this.vertices[before].score + weight[c] + this.lossWithout(before, chosen, weight, parent);
+        let best = before;
+        let most = kept;
+        for (const option of this.byColour[c]) {
+          if (option === before) continue;
+          const value = this.earn(option, chosen) + this.gainWith(option, before, chosen, weight, parent);
+          if (value > most + EPSILON) [best, most] = [option, value];
         }
-        chosen[c] = keep;
+        if (most < -EPSILON) best = -1;
+        if (best === before) continue;
+        chosen[c] = best;
+        refresh();
+        changed = true;
       }
     }
+    this.keep(chosen);
+  }
+
+  /** How much the ions below a chosen vertex would lose without it. */
+  private lossWithout(vertex: number, chosen: Int32Array, weight: Float64Array, parent: Int32Array): number {
+    let loss = 0;
+    for (const { to } of this.children[vertex]) {
+      const colour = this.vertices[to].colour;
+      if (chosen[colour] !== to || parent[colour] !== vertex) continue;
+      loss += weight[colour] - (this.bestEdge(to, chosen, vertex)?.weight ?? 0);
+    }
+    return loss;
+  }
+
+  /** How much other chosen ions would gain from a new vertex, compared with having none of its colour. */
+  private gainWith(
+    vertex: number,
+    replaced: number,
+    chosen: Int32Array,
+    weight: Float64Array,
+    parent: Int32Array
+  ): number {
+    let gain = 0;
+    for (const { to, weight: offered } of this.children[vertex]) {
+      const colour = this.vertices[to].colour;
+      if (chosen[colour] !== to) continue;
+      const orphaned = replaced >= 0 && parent[colour] === replaced;
+      const now = orphaned ? (this.bestEdge(to, chosen, replaced)?.weight ?? 0) : weight[colour];
+      if (offered > now) gain += offered - now;
+    }
+    return gain;
+  }
+
+  private keep(chosen: Int32Array): void {
+    let score = 0;
+    for (let c = 0; c < this.colours; c++) score += this.earn(chosen[c], chosen);
     if (score > this.bestScore) [this.best, this.bestScore] = [Int32Array.from(chosen), score];
   }
 
   /** Depth-first branch and bound over the colours in order; returns an upper bound on the best score. */
-  branch(maxSteps: number): number {
+  branch(maxWork: number): number {
     const chosen = new Int32Array(this.colours).fill(-1);
-    let steps = 0;
+    let work = 0;
     let open = -Infinity;
     const optimistic = (vertex: number, decided: number): number => {
       const v = this.vertices[vertex];
@@ -137,6 +199,7 @@ class TreeSearch {
       for (let c = decided; c < this.colours; c++) {
         let most = 0;
         for (const i of this.byColour[c]) most = Math.max(most, optimistic(i, decided));
+        work += this.byColour[c].length;
         sum += most;
       }
       return sum;
@@ -155,7 +218,7 @@ class TreeSearch {
         chosen[colour] = vertex;
         const limit = score + gain + remaining(colour + 1);
         if (limit > this.bestScore + EPSILON) {
-          if (steps++ >= maxSteps) open = Math.max(open, limit);
+          if (work >= maxWork) open = Math.max(open, limit);
           else visit(colour + 1, score + gain);
         }
       }

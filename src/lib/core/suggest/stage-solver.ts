@@ -39,8 +39,8 @@ export interface SolverLimits {
   maxPeaks: number;
   /** candidates per ion. */
   maxCandidates: number;
-  /** branch-and-bound steps per stage. */
-  maxSteps: number;
+  /** see `SolveLimits`. */
+  maxWork: number;
 }
 
 /** Reward that outweighs everything else, so that a confirmed formula is always part of the tree. */

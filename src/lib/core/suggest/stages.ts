@@ -1,7 +1,7 @@
 import { CARBON_ISOTOPE_SPACING } from '../chem';
 import { isUnitResolution, toleranceFor, windowAt } from '../formula/tolerance';
 import { type AssembledTree, type IonConstraint, type Tolerance, type TreeSpectrum } from '../model';
-import { WEIGHTS } from './weights';
+import { expectedSigma } from './mass-width';
 
 export type PeakRole = 'product' | 'precursor' | 'isotope' | 'above-precursor';
 
@@ -113,7 +113,7 @@ function attach(
       relative: intensity[i] / base,
       role: 'product',
       window,
-      sigma: window / WEIGHTS.windowSigmas,
+      sigma: expectedSigma(spectrum.analyser, asked, mz[i], window),
       confirmed: claims.find((c) => c.kind === 'confirmed')?.formula ?? null,
       rejected: claims.filter((c) => c.kind === 'rejected').map((c) => c.formula)
     });

@@ -23,7 +23,8 @@ import {
 } from './precursors';
 import { Prefilter } from './prefilter';
 import { StageSolver, type SolverLimits } from './stage-solver';
-import { buildStages, markPrecursor, type StageNode } from './stages';
+import { adaptSigma, unambiguousErrors } from './mass-width';
+import { buildStages, markPrecursor, type StageNode, type StagePeak } from './stages';
 import { WEIGHTS } from './weights';
 
 /** How a long computation reports and is stopped; both are called between candidates. */
@@ -32,9 +33,9 @@ export interface SuggestControl {
   isCancelled?: () => boolean;
 }
 
-const RANKING: SolverLimits = { maxPeaks: 50, maxCandidates: 16, maxSteps: 0 };
-const FINAL: SolverLimits = { maxPeaks: 2000, maxCandidates: 60, maxSteps: 20_000 };
-const FINAL_UNIT: SolverLimits = { maxPeaks: 400, maxCandidates: 24, maxSteps: 2_000 };
+const RANKING: SolverLimits = { maxPeaks: 50, maxCandidates: 16, maxWork: 0 };
+const FINAL: SolverLimits = { maxPeaks: 2000, maxCandidates: 60, maxWork: 3_000_000 };
+const FINAL_UNIT: SolverLimits = { maxPeaks: 400, maxCandidates: 24, maxWork: 300_000 };
 /** Precursor candidates whose full trees are computed. */
 const FULL_TREES = 200;
 
@@ -136,6 +137,7 @@ class Suggester {
         `The precursor m/z ${mz.toFixed(4)} is ${errorPpm(mz, calculated).toFixed(1)} ppm from ${chosen.adduct.name} of ${formula} (${calculated.toFixed(4)}).`
       );
     }
+    this.adapt(ions, [chosen]);
     return this.finish(ions, losses, [chosen]);
   }
 
@@ -158,6 +160,7 @@ class Suggester {
     const losses = new LossScorer(ions);
     this.addIsotopeTerms(ions, all);
     const chosen = this.preselect(ions, losses, all, window);
+    this.adapt(ions, chosen.slice(0, 10));
     const solver = new StageSolver(ions, losses, this.sign, RANKING);
     const rated = chosen.map((candidate, i) => {
       this.checkCancelled();
@@ -186,6 +189,15 @@ class Suggester {
       candidate.terms['isotope pattern'] = likelihood;
       candidate.prior += likelihood;
     }
+  }
+
+  /** Widths of the mass error from the ions that fit one formula only, under the most promising candidates. */
+  private adapt(ions: IonSpace, candidates: readonly PrecursorCandidate[]): void {
+    if (this.root.unitResolution) return;
+    adaptSigma(
+      allPeaks(this.root),
+      candidates.flatMap((c) => unambiguousErrors(ions, this.root, c.ion, this.sign)).slice(0, 400)
+    );
   }
 
   /** The candidates worth a full tree, by prior and a quick look at the MS2 spectrum. */
@@ -276,6 +288,8 @@ class Suggester {
     };
   }
 }
+
+const allPeaks = (node: StageNode): StagePeak[] => [...node.peaks, ...node.children.flatMap(allPeaks)];
 
 const hasTrap = (node: StageNode): boolean => node.trap || node.children.some(hasTrap);
 
