@@ -75,6 +75,8 @@ export interface RunInfo {
   startTime: string | null;
   /** number of scans by stage, e.g. {"1": 4, "2": 12}. */
   scans: Record<string, number>;
+  /** whether the SHA-1 that the file states fits its bytes. */
+  checksum?: 'ok' | 'mismatch' | 'absent' | 'not-checked';
 }
 
 /** Something the reader noticed and what it did about it. `code` is stable, `message` is for people. */

@@ -1,0 +1,177 @@
+import { and, eq } from 'drizzle-orm';
+import { createHash } from 'node:crypto';
+import { pipeline, type Readable } from 'node:stream';
+import { createGunzip, inflateSync } from 'node:zlib';
+import { CoreError } from '$lib/core/errors';
+import { readMzml, type ReadOptions, type RunSummary } from '$lib/core/mzml';
+import type { RunInfo, RunWarning, Scan, ScanHeader } from '$lib/core/model';
+import { bytesText } from '$lib/components/ui/format';
+import { packPeaks } from '../db/packing';
+import { runPrecursors, runs, scans } from '../db/schema';
+import { goOn, type JobContext } from '../jobs/job';
+import { clearReading } from '../jobs/settle';
+import { PeakMemory, precursorRows } from './run-precursors';
+
+type RunRow = typeof runs.$inferSelect;
+type ScanRow = typeof scans.$inferInsert;
+
+/** One insert takes at most so many scans and so many bytes of packed peaks. */
+const BATCH_ROWS = 200;
+const BATCH_BYTES = 4 << 20;
+
+const platform: Pick<ReadOptions, 'inflate' | 'sha1' | 'gunzip'> = {
+  inflate: (bytes, _expected, maxLength) => {
+    try {
+      return inflateSync(bytes, { maxOutputLength: Math.max(1, maxLength) });
+    } catch (error) {
+      if ((error as NodeJS.ErrnoException).code === 'ERR_BUFFER_TOO_LARGE')
+        throw new CoreError('inflate-limit', `An array inflates to more than the ${maxLength} bytes it declares`);
+      throw new CoreError('bad-array', 'zlib data are damaged');
+    }
+  },
+  sha1: () => {
+    const hash = createHash('sha1');
+    return { update: (bytes) => void hash.update(bytes), hex: () => hash.digest('hex') };
+  },
+  gunzip: (source) => gunzipped(source)
+};
+
+/** Node's gunzip over all members; a file that ends in mid-stream simply ends, so that its complete scans are kept. */
+async function* gunzipped(source: AsyncIterable<Uint8Array>): AsyncGenerator<Uint8Array> {
+  const stream = pipeline(source, createGunzip({ chunkSize: 1 << 18 }), () => undefined) as unknown as Readable;
+  try {
+    yield* stream;
+  } catch (error) {
+    const { code } = error as NodeJS.ErrnoException;
+    if (code === 'Z_BUF_ERROR') return;
+    if (code?.startsWith('Z_'))
+      throw new CoreError(
+        'truncated',
+        'The gzip stream is damaged',
+        undefined,
+        'Compress the file again, or upload it uncompressed.'
+      );
+    throw error;
+  }
+}
+
+function scanRow(runId: string, scan: Scan): ScanRow {
+  const { peaks, ...header } = scan;
+  return {
+    runId,
+    index: scan.index,
+    nativeId: scan.id.slice(0, 500),
+    level: scan.level,
+    polarity: scan.polarity,
+    time: scan.time,
+    totalIonCurrent: scan.totalIonCurrent,
+    basePeakMz: scan.basePeakMz,
+    basePeakIntensity: scan.basePeakIntensity,
+    centroided: scan.centroided,
+    peakCount: peaks.mz.length,
+    header,
+    peaks: packPeaks(peaks)
+  };
+}
+
+/** Collects rows and writes them in batches, each in a transaction of its own that the job's claim guards. */
+class ScanWriter {
+  private rows: ScanRow[] = [];
+  private bytes = 0;
+
+  constructor(private readonly context: JobContext) {}
+
+  async add(row: ScanRow): Promise<void> {
+    this.rows.push(row);
+    this.bytes += row.peaks.length;
+    if (this.rows.length >= BATCH_ROWS || this.bytes >= BATCH_BYTES) await this.flush();
+  }
+
+  async flush(): Promise<void> {
+    const rows = this.rows;
+    this.rows = [];
+    this.bytes = 0;
+    if (!rows.length) return;
+    // A commit whose answer was lost is done again: the same row twice is then no error.
+    await this.context.transact((tx) => tx.insert(scans).ignore().values(rows));
+  }
+}
+
+const NO_MSN: RunWarning = {
+  code: 'no-msn',
+  message:
+    'The file holds no MSn scans, so no tree can be built from it. Export the run again with its MS2 and deeper scans, or upload the run in which the precursor ion was fragmented',
+  scans: [],
+  count: 1
+};
+
+const infoOf = (summary: RunSummary): RunInfo => ({ ...summary.info, checksum: summary.checksum });
+
+async function finish(
+  context: JobContext,
+  run: RunRow,
+  headers: ScanHeader[],
+  memory: PeakMemory,
+  summary: RunSummary
+) {
+  context.report({ done: run.bytes, total: run.bytes, what: `Finding the precursor ions of ${headers.length} scans` });
+  const precursors = precursorRows(run.id, headers, memory);
+  const warnings = headers.some((header) => header.level > 1) ? summary.warnings : [...summary.warnings, NO_MSN];
+  goOn(context);
+  await context.transact(async (tx) => {
+    await tx.delete(runPrecursors).where(eq(runPrecursors.runId, run.id));
+    for (let i = 0; i < precursors.length; i += 500)
+      await tx.insert(runPrecursors).values(precursors.slice(i, i + 500));
+    await tx
+      .update(runs)
+      .set({ state: 'ready', info: infoOf(summary), warnings, error: null, readAt: new Date() })
+      .where(eq(runs.id, run.id));
+  });
+  return { scans: headers.length, precursors: precursors.length };
+}
+
+async function* watched(source: Readable): AsyncGenerator<Uint8Array> {
+  yield* source;
+}
+
+/**
+ * Work of a 'read-run' job: streams the stored file through the reader into rows of scans, finds its precursor ions, and
+ * only then calls the run ready. A repetition first removes what an earlier attempt wrote.
+ * @throws CoreError for a file that cannot be used, JobCancelled, JobLost, MissingFile
+ */
+export async function readRunJob(context: JobContext) {
+  const { job, store } = context;
+  const run = await context.transact(async (tx) => {
+    const [row] = await tx.select().from(runs).where(eq(runs.id, job.subjectId)).for('update');
+    if (!row || row.state === 'ready') return null;
+    await clearReading(tx, row.id);
+    await tx
+      .update(runs)
+      .set({ state: 'reading', error: null })
+      .where(and(eq(runs.id, row.id)));
+    return row;
+  });
+  if (!run) return null;
+  const headers: ScanHeader[] = [];
+  const memory = new PeakMemory();
+  const writer = new ScanWriter(context);
+  const onProgress = (bytes: number, count: number) =>
+    context.report({
+      done: bytes,
+      total: run.bytes,
+      what: `Reading: ${bytesText(bytes)} of ${bytesText(run.bytes)}, ${count} scans`
+    });
+  const options: ReadOptions = { ...platform, onProgress, isCancelled: context.isCancelled };
+  for await (const event of readMzml(watched(await store.open(run.storageKey)), options)) {
+    if (event.kind === 'scan') {
+      const { peaks, ...header } = event.scan;
+      memory.keep(headers.length, header.level, peaks);
+      headers.push(header);
+      await writer.add(scanRow(run.id, event.scan));
+    } else if (event.kind === 'end') {
+      await writer.flush();
+      return finish(context, run, headers, memory, event.summary);
+    }
+  }
+  throw new CoreError('truncated', 'The reader ended without a summary');
+}
