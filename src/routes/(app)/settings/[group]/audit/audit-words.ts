@@ -1,0 +1,74 @@
+type Details = Record<string, unknown>;
+
+const text = (details: Details, key: string): string => {
+  const value = details[key];
+  return typeof value === 'string' || typeof value === 'number' ? String(value) : '';
+};
+
+/** What each act is called, in the past tense and for a reader who does not know the program. */
+const WORDS: Record<string, string> = {
+  'group.created': 'started the group',
+  'group.renamed': 'renamed the group',
+  'group.defaults-changed': 'changed the defaults',
+  'member.invited': 'invited somebody',
+  'member.invitation-withdrawn': 'withdrew an invitation',
+  'member.joined': 'joined the group',
+  'member.role-changed': 'changed a role',
+  'member.studies-opened': 'chose the studies of a guest',
+  'member.removed': 'took a member out',
+  'member.left': 'left the group',
+  'study.created': 'created a study',
+  'study.edited': 'edited a study',
+  'study.deleted': 'deleted a study',
+  'run.uploaded': 'uploaded a run',
+  'run.deleted': 'deleted a run',
+  'tree.built': 'built trees',
+  'tree.edited': 'edited a tree',
+  'claim.confirm': 'confirmed an ion',
+  'claim.confirmed': 'confirmed an ion',
+  'claim.reject': 'rejected an ion',
+  'claim.rejected': 'rejected an ion',
+  'claim.open': 'left an ion open',
+  'claim.opened': 'left an ion open',
+  'claim.undo': 'took a decision back',
+  'claim.undone': 'took a decision back'
+};
+
+/** "changed a role"; an act without an entry is said by its own name: 'share-link.made' gives "share link made". */
+export function actionWords(action: string): string {
+  return WORDS[action] ?? action.replace(/[.-]/g, ' ');
+}
+
+/** What exactly, in a few words; empty where the act says it all. */
+export function detailWords(action: string, details: Details): string {
+  const [name, from, to] = ['name', 'from', 'to'].map((key) => text(details, key));
+  switch (action) {
+    case 'member.invited':
+      return `${text(details, 'email')} as ${text(details, 'role')}`;
+    case 'member.invitation-withdrawn':
+      return text(details, 'email');
+    case 'member.role-changed':
+      return `${name}: ${from} → ${to}`;
+    case 'member.studies-opened':
+      return `${name}: ${text(details, 'studies')} open`;
+    case 'group.renamed':
+      return `${from} → ${to}`;
+    case 'group.defaults-changed':
+      return `approvals needed: ${text(details, 'approvalsNeeded')}`;
+    default:
+      return plainDetails(details);
+  }
+}
+
+/** Names, formulas, numbers and the like as they are; ids and nested values say nothing to a reader. */
+function plainDetails(details: Details): string {
+  return Object.entries(details)
+    .filter(([key, value]) => /string|number/.test(typeof value) && value !== '' && !/id$|hash|version/i.test(key))
+    .map(([key, value]) => (key === 'name' ? String(value) : `${spaced(key)} ${shown(value)}`))
+    .join(', ')
+    .slice(0, 300);
+}
+
+const spaced = (key: string) => (key === 'mz' ? 'm/z' : key.replace(/([A-Z])/g, ' $1').toLowerCase());
+const shown = (value: unknown) =>
+  typeof value === 'number' && !Number.isInteger(value) ? value.toFixed(4) : String(value);
