@@ -52,3 +52,12 @@ export function adaptSigma(peaks: readonly StagePeak[], errors: readonly number[
     peak.sigma = Math.hypot(Math.sqrt(variance) * peak.mz * 1e-6, FLOOR);
   }
 }
+
+/**
+ * Narrows the widths for choosing among the formulas of one ion once the precursor's formula is settled: the mass
+ * error of this very ion was measured, whereas loss statistics are averages over all of chemistry, so that they
+ * should decide only between formulas of nearly equal error.
+ */
+export function sharpen(peaks: readonly StagePeak[]): void {
+  for (const peak of peaks) if (peak.window <= 0.05) peak.sigma /= WEIGHTS.massEmphasis;
+}

@@ -23,7 +23,7 @@ import {
 } from './precursors';
 import { Prefilter } from './prefilter';
 import { StageSolver, type SolverLimits } from './stage-solver';
-import { adaptSigma, unambiguousErrors } from './mass-width';
+import { adaptSigma, sharpen, unambiguousErrors } from './mass-width';
 import { buildStages, markPrecursor, type StageNode, type StagePeak } from './stages';
 import { WEIGHTS } from './weights';
 
@@ -232,6 +232,7 @@ class Suggester {
     const limits = this.root.unitResolution ? FINAL_UNIT : FINAL;
     const solver = new StageSolver(ions, losses, this.sign, limits);
     const best = ranked[0];
+    sharpen(allPeaks(this.root));
     this.checkCancelled();
     const result = solver.solve(this.root, best.ion, this.charge);
     best.terms['fragmentation tree'] ??= result.score;

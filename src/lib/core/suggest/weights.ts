@@ -6,6 +6,8 @@
 export const WEIGHTS = {
   /** search window in standard deviations of the mass error. */
   windowSigmas: 3,
+  /** how much narrower mass errors are judged within one ion than between precursor formulas. */
+  massEmphasis: 14,
   /** reward of explaining a peak at all: log odds that a peak above the cut-off is signal. */
   explained: 2,
   /** noise intensities follow a Pareto law; its exponent. */
