@@ -5,7 +5,9 @@ import { vitePreprocess } from '@sveltejs/vite-plugin-svelte';
 export default {
   preprocess: vitePreprocess(),
   kit: {
-    adapter: adapter({ out: 'build', envPrefix: '' }),
+    // The tests build beside a running product, so both folders can be moved.
+    outDir: process.env.RIVENMARK_KIT_DIR || '.svelte-kit',
+    adapter: adapter({ out: process.env.RIVENMARK_BUILD_DIR || 'build', envPrefix: '' }),
     // Tests, the command line and the operating scripts are type-checked together with the application.
     typescript: {
       config: (config) => {

@@ -44,7 +44,11 @@ export interface MariadbOptions {
   folder: string;
   /** TCP port on 127.0.0.1; default: a free one */
   port?: number;
+  /** for data that may be lost: nothing waits for the disk */
+  quick?: boolean;
 }
+
+const QUICK = ['--innodb-flush-log-at-trx-commit=0', '--skip-innodb-doublewrite'];
 
 const addressOf = (port: number, secret: string, database: string) =>
   `mysql://${USER}:${secret}@${HOST}:${port}/${database}`;
@@ -57,7 +61,7 @@ function lastLines(path: string, count = 12): string {
   }
 }
 
-function launch(at: MariadbFolder, port: number): ChildProcess {
+function launch(at: MariadbFolder, port: number, more: readonly string[]): ChildProcess {
   const log = openSync(at.log, 'w', 0o600);
   // Its own process group: a Ctrl-C in the terminal must reach the server only after its clients are gone.
   const child = spawn(
@@ -79,7 +83,8 @@ function launch(at: MariadbFolder, port: number): ChildProcess {
       '--default-time-zone=+00:00',
       '--max-allowed-packet=64M',
       '--innodb-buffer-pool-size=128M',
-      '--transaction-isolation=READ-COMMITTED'
+      '--transaction-isolation=READ-COMMITTED',
+      ...more
     ],
     { stdio: ['ignore', log, log], detached: true, cwd: at.root }
   );
@@ -143,7 +148,7 @@ function handle(child: ChildProcess, at: MariadbFolder, port: number, secret: st
  * and no system service take part. A server that a killed process left on the folder is ended first.
  * @throws Error saying what to do: not installed, folder not usable, port taken, or the end of the server's log
  */
-export async function startMariadb({ folder, port }: MariadbOptions): Promise<Mariadb> {
+export async function startMariadb({ folder, port, quick = false }: MariadbOptions): Promise<Mariadb> {
   const at = mariadbFolder(folder);
   await endLeftOver(at);
   installTables(at);
@@ -151,7 +156,7 @@ export async function startMariadb({ folder, port }: MariadbOptions): Promise<Ma
   for (let attempt = 1; ; attempt++) {
     const chosen = port ?? (await freePort());
     writeInitFile(at, secret);
-    const child = launch(at, chosen);
+    const child = launch(at, chosen, quick ? QUICK : []);
     try {
       await untilReady(child, at, chosen, secret);
       return handle(child, at, chosen, secret);

@@ -24,7 +24,7 @@ interface Server {
 async function server(folder: string): Promise<Server> {
   const given = process.env.RIVENMARK_TEST_DB_URL;
   if (given) return { url: given, stop: () => Promise.resolve() };
-  return startMariadb({ folder: join(folder, 'mariadb') });
+  return startMariadb({ folder: join(folder, 'mariadb'), quick: true });
 }
 
 async function run(url: string, statement: string): Promise<void> {
