@@ -14,18 +14,19 @@ const TOO_COMMON = new Set([
   'rivenmark'
 ]);
 
-/** "abcdefghijkl", "123456789012": each character follows the one before it (digits wrap from 9 to 0). */
+const ZERO = 48;
+const NINE = 57;
+
+/** The character code after `code` when counting up or down; digits wrap between 9 and 0. */
+function follower(code: number, step: 1 | -1): number {
+  if (code === NINE && step === 1) return ZERO;
+  return code === ZERO && step === -1 ? NINE : code + step;
+}
+
+/** "abcdefghijkl", "1234567890", "987654321098": each character follows the one before it. */
 function isSequence(text: string): boolean {
-  const steps = [...text.toLowerCase()].map((c) => c.codePointAt(0) ?? 0);
-  return [1, -1].every((step) =>
-    steps.slice(1).some((code, i) => {
-      const expected = steps[i] + step;
-      const wrapped = expected === 58 ? 48 : expected === 47 ? 57 : expected;
-      return code !== wrapped;
-    })
-  )
-    ? false
-    : true;
+  const codes = [...text.toLowerCase()].map((c) => c.codePointAt(0) ?? 0);
+  return ([1, -1] as const).some((step) => codes.slice(1).every((code, i) => code === follower(codes[i], step)));
 }
 
 /**
