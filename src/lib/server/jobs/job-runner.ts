@@ -1,7 +1,7 @@
 import type { Database } from '../db/connection';
 import { log } from '../log';
 import { isDatabaseAway, persist } from './database-away';
-import type { ClaimedJob, JobOutcome, JobProgress } from './job';
+import { unforeseen, type ClaimedJob, type JobOutcome, type JobProgress } from './job';
 import { newOwner, ownerIsDead } from './owner';
 import { beat, cancelsAsked, claim, noteProgress, type JobKind } from './queue';
 import { reap, settle } from './settle';
@@ -94,7 +94,7 @@ export class JobRunner {
   private async round(): Promise<void> {
     if (performance.now() - this.lastBeat >= this.options.heartbeat) {
       // First the sign of life, then the search for the dead: after an outage no process takes its own jobs for dead.
-      await beat(this.db, this.owner);
+      await beat(this.db, this.owner, [...this.running.keys()]);
       await reap(this.db, SILENT_BEATS * this.options.heartbeat, (owner) => ownerIsDead(owner, living));
       this.lastBeat = performance.now();
     }
@@ -143,7 +143,11 @@ export class JobRunner {
     const { job, flag } = entry;
     const { threads, mail } = this.options;
     try {
-      const ended = await (job.kind === 'mail' ? mail(job) : threads.run(job, flag, (note) => (entry.progress = note)));
+      const work = () => (job.kind === 'mail' ? mail(job) : threads.run(job, flag, (note) => (entry.progress = note)));
+      const ended = await work().catch((error: unknown): JobOutcome => {
+        log.error({ err: error, job: job.id }, 'a job could not be started');
+        return { kind: 'failed', failure: unforeseen(error) };
+      });
       const outcome: JobOutcome = entry.asked && ended.kind === 'failed' ? { kind: 'cancelled' } : ended;
       // While stopping there is no time to wait for a database that is away: the next start finds the job silent.
       await persist(() => settle(this.db, job, outcome), { patience: Infinity, stopped: () => this.stopping });

@@ -54,14 +54,15 @@ export function claim(db: Database, owner: string, kinds: JobKind[]): Promise<Cl
   );
 }
 
-/** Says that the running jobs of a process live. A row that its own worker has locked just now is passed over: it lives too. */
-export function beat(db: Database, owner: string): Promise<void> {
-  return db.transaction(
+/** Says that these jobs of a process live. A row that its own worker has locked just now is passed over: it lives too. */
+export async function beat(db: Database, owner: string, ids: string[]): Promise<void> {
+  if (!ids.length) return;
+  await db.transaction(
     async (tx) => {
       const mine = await tx
         .select({ id: jobs.id })
         .from(jobs)
-        .where(and(eq(jobs.state, 'running'), eq(jobs.owner, owner)))
+        .where(and(inArray(jobs.id, ids), eq(jobs.state, 'running'), eq(jobs.owner, owner)))
         .for('update', { skipLocked: true });
       if (mine.length)
         await tx

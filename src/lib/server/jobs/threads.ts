@@ -8,9 +8,9 @@ import type { FromWorker, ToWorker } from './messages';
 /** MB of JavaScript heap of one thread; a job that needs more ends its thread, never the server. */
 const HEAP = 1536;
 
-/** The bundled worker where this is a build, else its TypeScript source through tsx. */
-function entry(): { file: string; options: WorkerOptions } {
-  const options: WorkerOptions = { resourceLimits: { maxOldGenerationSizeMb: HEAP } };
+/** The bundled worker where this is a build, else its source through the TypeScript loader. */
+function entry(env: NodeJS.ProcessEnv): { file: string; options: WorkerOptions } {
+  const options: WorkerOptions = { env, resourceLimits: { maxOldGenerationSizeMb: HEAP } };
   if (import.meta.env?.PROD) {
     const places = [
       resolve('build/workers/worker.mjs'),
@@ -20,7 +20,7 @@ function entry(): { file: string; options: WorkerOptions } {
     if (!file) throw new Error(`The worker of this build is missing (${places.join(', ')}). Run \`npm run build\`.`);
     return { file, options: { ...options, execArgv: [] } };
   }
-  return { file: resolve('src/lib/server/jobs/worker.ts'), options: { ...options, execArgv: ['--import', 'tsx'] } };
+  return { file: resolve('src/lib/server/jobs/worker-entry.mjs'), options: { ...options, execArgv: [] } };
 }
 
 const CRASHED: JobOutcome = {
@@ -45,8 +45,11 @@ export class JobThreads {
   private readonly idle: Thread[] = [];
   private readonly busy = new Map<string, Thread>();
 
+  /** @param env environment of the threads; by default that of this process */
+  constructor(private readonly env: NodeJS.ProcessEnv = process.env) {}
+
   private start(): Thread {
-    const { file, options } = entry();
+    const { file, options } = entry(this.env);
     const thread: Thread = { worker: new Worker(file, options), finish: null, progress: null };
     thread.worker.on('message', (message: FromWorker) => {
       if (message.kind === 'progress') thread.progress?.(message.progress);
@@ -62,7 +65,11 @@ export class JobThreads {
   }
 
   /** Runs a job to its end; a thread that dies gives a failure. @param flag shared memory, set to 1 to ask the job to stop */
-  run(job: ClaimedJob, flag: SharedArrayBuffer, onProgress: (progress: JobProgress) => void): Promise<JobOutcome> {
+  async run(
+    job: ClaimedJob,
+    flag: SharedArrayBuffer,
+    onProgress: (progress: JobProgress) => void
+  ): Promise<JobOutcome> {
     const thread = this.idle.pop() ?? this.start();
     this.busy.set(job.id, thread);
     return new Promise((done) => {
