@@ -4,7 +4,7 @@ import { canonicalJson, fixed, significant } from './canonical';
 describe('canonicalJson', () => {
   it('serialises the sample of RFC 8785, section 3.2.3', () => {
     const sample = {
-      numbers: [333333333.33333329, 1e30, 4.5, 2e-3, 0.000000000000000000000000001],
+      numbers: [333333333.3333333, 1e30, 4.5, 2e-3, 0.000000000000000000000000001],
       string: '\u20ac$\u000F\u000aA\'\u0042\u0022\u005c\\"/',
       literals: [null, true, false]
     };

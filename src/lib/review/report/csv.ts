@@ -1,4 +1,4 @@
-import { chargeText, pathText } from './columns';
+import { pathText } from './columns';
 import { mzDecimals, type Report, type ReportRow } from './model';
 
 type Value = string | number | null;
