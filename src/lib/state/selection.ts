@@ -34,9 +34,9 @@ export function readSelection(query: URLSearchParams): Selection {
   };
 }
 
-/** Writes a selection into a query; other parameters stay. @returns the query with "?", or '' when it is empty */
-export function writeSelection(selection: Selection, query: URLSearchParams): string {
-  const next = new URLSearchParams(query);
+/** Writes a selection into the query of an address; other parameters stay. @returns the query with "?", or '' when it is empty */
+export function writeSelection(selection: Selection, search: string): string {
+  const next = new URLSearchParams(search);
   const put = (name: string, value: string | null) => (value === null ? next.delete(name) : next.set(name, value));
   put('ion', selection.ion === null ? null : String(selection.ion));
   put('spectrum', selection.ion !== null || selection.spectrum === null ? null : String(selection.spectrum));

@@ -93,9 +93,9 @@ function isotopeDistances(ion: IonRow): { label: string; delta: number; expected
   const composition = ion.formula ? parseFormula(ion.formula) : null;
   const pattern = composition ? ionIsotopePeaks(composition, ion.charge || 1, 1e-3) : [];
   const near = (delta: number) => {
-    const base = pattern[0];
-    const peak = base && pattern.find((p) => Math.abs(p.mz - base.mz - delta) < 0.006);
-    return peak ? (100 * peak.intensity) / base.intensity : null;
+    const base = pattern.find((p) => p.offset === 0);
+    const peak = base && pattern.find((p) => p.offset > 0 && Math.abs(p.mz - base.mz - delta) < 0.006);
+    return base && peak ? (100 * peak.relative) / base.relative : null;
   };
   const heavy = (['S', 'Cl', 'Br'] as const).filter((symbol) => !composition || (composition[symbol] ?? 0) > 0);
   const found = [1, 2].map((n) => ({
