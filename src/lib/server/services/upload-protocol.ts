@@ -1,13 +1,22 @@
 import { FileStore } from '@tus/file-store';
 import { Metadata, Server } from '@tus/server';
 import { randomUUID } from 'node:crypto';
-import { newUploadSchema, tooLarge } from '$lib/schema/upload';
+import type { z } from 'zod';
+import { newUploadSchema } from '$lib/schema/upload';
 import type { Actor } from '../auth/authorize';
 import { config } from '../config';
 import { parse } from '../edge';
 import { ServiceError, statusOf } from '../errors';
 import { isTransferId, transferFolder } from '../storage/transfers';
-import { completeUpload, dropUpload, hasArrived, openUpload, requireUpload, TRANSFER_HOURS } from './uploads';
+import {
+  admitUpload,
+  completeUpload,
+  dropUpload,
+  hasArrived,
+  openUpload,
+  requireUpload,
+  TRANSFER_HOURS
+} from './uploads';
 
 /** Header that names the run once the last piece has arrived. */
 export const RUN_HEADER = 'Rivenmark-Run';
@@ -51,20 +60,19 @@ const bodyOf = (error: ServiceError): string =>
 
 let server: Server | null = null;
 
-/** Checks what can be told before a transfer exists, so that nothing is sent in vain. */
-function checkCreation(request: Request): void {
+/** What a creation says of its file. @throws ServiceError invalid */
+function announced(request: Request): z.output<typeof newUploadSchema> {
   const length = request.headers.get('upload-length');
   if (!length || !/^\d{1,15}$/.test(length))
     throw new ServiceError('invalid', 'The size of the file is missing.', 'Send it as Upload-Length.');
-  const limit = config().RIVENMARK_MAX_UPLOAD;
-  if (Number(length) > limit) throw new ServiceError('too-large', tooLarge(Number(length), limit));
   let metadata: Record<string, string | null>;
   try {
     metadata = Metadata.parse(request.headers.get('upload-metadata') ?? undefined) ?? {};
   } catch {
     throw new ServiceError('invalid', 'The name of the file cannot be read.', 'Send it as Upload-Metadata.');
   }
-  parse(newUploadSchema, { filename: metadata.filename ?? '', studyId: metadata.studyId ?? '', bytes: Number(length) });
+  const { filename = '', studyId = '' } = metadata;
+  return parse(newUploadSchema, { filename, studyId, bytes: Number(length) });
 }
 
 /**
@@ -78,7 +86,8 @@ export async function handleTransfer(actor: Actor | null, request: Request, id: 
   senders.set(request, actor);
   server ??= makeServer();
   if (id === null) {
-    checkCreation(request);
+    // Before the protocol's own server sees it: a refusal then costs no byte of the file.
+    await admitUpload(actor, announced(request));
     return server.handleWeb(request);
   }
   if (!isTransferId(id)) throw new ServiceError('not-found', 'There is no such transfer.', 'Choose the file again.');

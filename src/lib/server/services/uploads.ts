@@ -26,16 +26,21 @@ export const TRANSFER_HOURS = 48;
 /** Where the file of a transfer is stored; known before it is, so that an interrupted completion can be taken up. */
 const storageKeyOf = (uploadId: string) => `runs/${uploadId}`;
 
-/** Notes a new transfer. @throws ServiceError too-large, invalid, forbidden, not-found, unauthenticated */
+/** Whether the person may begin such a transfer. @throws ServiceError too-large, invalid, forbidden, not-found, unauthenticated */
+export async function admitUpload(actor: Actor | null, input: z.output<typeof newUploadSchema>): Promise<void> {
+  await requireStudy(actor, input.studyId, 'run.upload');
+  const { RIVENMARK_MAX_UPLOAD: limit } = config();
+  if (input.bytes > limit) throw new ServiceError('too-large', tooLarge(input.bytes, limit));
+  if (input.bytes === 0) throw new ServiceError('invalid', 'The file is empty.', 'Export or copy it again.');
+}
+
+/** Notes a new transfer. @throws ServiceError as {@link admitUpload} */
 export async function openUpload(
   actor: Actor | null,
   uploadId: string,
   input: z.output<typeof newUploadSchema>
 ): Promise<void> {
-  await requireStudy(actor, input.studyId, 'run.upload');
-  const { RIVENMARK_MAX_UPLOAD: limit } = config();
-  if (input.bytes > limit) throw new ServiceError('too-large', tooLarge(input.bytes, limit));
-  if (input.bytes === 0) throw new ServiceError('invalid', 'The file is empty.', 'Export or copy it again.');
+  await admitUpload(actor, input);
   await database()
     .insert(uploads)
     .values({ id: uploadId, studyId: input.studyId, userId: actor!.id, fileName: input.filename, bytes: input.bytes });
