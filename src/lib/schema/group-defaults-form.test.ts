@@ -17,7 +17,8 @@ describe('the form of the defaults', () => {
       form({ 'ppm.orbitrap': '5', 'mda.orbitrap': '0,8', 'mda.ion-trap': '300' }).data?.defaults.tolerances
     ).toEqual({
       orbitrap: { ppm: 5, mda: 0.8 },
-      'ion-trap': { ppm: 0, mda: 300 }
+      // ppm is left empty: the program's own 10 ppm for ion traps
+      'ion-trap': { ppm: 10, mda: 300 }
     });
   });
   it('names the field of a wrong window', () => {

@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { parseAdduct, parseElementRanges } from '$lib/core/chem';
 import { CoreError } from '$lib/core/errors';
+import { toleranceFor } from '$lib/core/formula';
 import { groupDefaultsSchema, type GroupDefaults } from './group';
 
 /** Analysers in the order in which the form lists them. */
@@ -61,13 +62,15 @@ function tolerancesOf(fields: Record<string, number | null>, context: z.Refineme
   for (const analyser of ANALYSERS) {
     const [ppm, mda] = [fields[`ppm.${analyser}`], fields[`mda.${analyser}`]];
     if (ppm === null && mda === null) continue;
-    if (!ppm && !mda)
+    const own = toleranceFor(analyser);
+    const window = { ppm: ppm ?? own.ppm, mda: mda ?? own.mda };
+    if (window.ppm === 0 && window.mda === 0)
       context.addIssue({
         code: 'custom',
         path: [`ppm.${analyser}`],
-        message: 'A window of zero finds nothing: give ppm, mDa, or neither.'
+        message: 'A window of zero finds nothing: at least one of ppm and mDa must be more.'
       });
-    tolerances[analyser] = { ppm: ppm ?? 0, mda: mda ?? 0 };
+    tolerances[analyser] = window;
   }
   return tolerances;
 }

@@ -54,7 +54,7 @@ export function detailWords(action: string, details: Details): string {
     case 'group.renamed':
       return `${from} → ${to}`;
     case 'group.defaults-changed':
-      return `approvals needed: ${text(details, 'approvalsNeeded')}`;
+      return `approvals ${text(details, 'approvalsNeeded')}, elements ${text(details, 'elements') || 'as the program'}`;
     default:
       return plainDetails(details);
   }
