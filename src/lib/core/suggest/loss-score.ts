@@ -9,6 +9,8 @@ export interface LossWorth {
   radical: boolean;
   terms: ScoreTerms;
   score: number;
+  /** the same from an odd-electron ion, which a radical loss turns even-electron again. */
+  scoreFromOdd: number;
 }
 
 /** Scores losses by key, each computed once. */
@@ -38,7 +40,9 @@ export class LossScorer {
     }
     if (radical) terms['radical loss'] = common ? WEIGHTS.radicalListed : WEIGHTS.radicalOther;
     if (dbe < 0) terms['saturated loss'] = dbe * 1;
-    return { mass, radical, terms, score: Object.values(terms).reduce((a, b) => a + b, 0) };
+    const score = Object.values(terms).reduce((a, b) => a + b, 0);
+    const scoreFromOdd = radical ? score - terms['radical loss'] + WEIGHTS.radicalBack : score;
+    return { mass, radical, terms, score, scoreFromOdd };
   }
 }
 

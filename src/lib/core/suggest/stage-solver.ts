@@ -148,10 +148,10 @@ export class StageSolver {
   }
 
   private edgeWeight(root: IonFormula, charge: number, from: IonFormula, to: PeakCandidate): number {
-    const { terms } = this.edgeTerms(root, charge, from, to);
-    let sum = 0;
-    for (const name in terms) sum += terms[name];
-    return sum;
+    const loss = from.key - this.baseOf(to).key;
+    if (loss === 0) return 0;
+    const worth = this.losses.worth(loss);
+    return (isOdd(from, charge) ? worth.scoreFromOdd : worth.score) + lossMassTerm(worth.mass, root.mass);
   }
 
   /** Key of the loss between two ions and its named terms; the loss is empty (key 0) for a bare water adduct. */

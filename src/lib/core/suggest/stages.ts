@@ -95,15 +95,17 @@ function attach(
   constraints: readonly IonConstraint[]
 ) {
   const tolerance = asked ?? toleranceFor(spectrum.analyser);
+  // A window asked for in ppm alone says nothing of light ions, where locating the peak limits: the analyser's floor holds.
+  const floor = asked?.mda === 0 ? toleranceFor(spectrum.analyser).mda * 1e-3 : 0;
   node.spectra.push(spectrum.index);
-  node.unitResolution ||= isUnitResolution(tolerance);
+  node.unitResolution ||= isUnitResolution(asked?.mda === 0 ? toleranceFor(spectrum.analyser) : tolerance);
   node.trap ||= spectrum.analyser === 'ion-trap';
   node.window = node.unitResolution ? UNIT_OFFSET : Math.max(0.01, windowAt(tolerance, node.mz));
   const { mz, intensity } = spectrum.peaks;
   const base = intensity.reduce((a, b) => Math.max(a, b), 0) || 1;
   const own = constraints.filter((c) => c.spectrum === spectrum.index);
   for (let i = 0; i < mz.length; i++) {
-    const window = windowAt(tolerance, mz[i]);
+    const window = Math.max(windowAt(tolerance, mz[i]), floor);
     const claims = own.filter((c) => Math.abs(c.mz - mz[i]) < 1e-4);
     node.peaks.push({
       spectrum: spectrum.index,

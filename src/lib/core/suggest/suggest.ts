@@ -34,8 +34,10 @@ export interface SuggestControl {
 }
 
 const RANKING: SolverLimits = { maxPeaks: 50, maxCandidates: 16, maxWork: 0 };
-const FINAL: SolverLimits = { maxPeaks: 2000, maxCandidates: 60, maxWork: 3_000_000 };
+const FINAL: SolverLimits = { maxPeaks: 2000, maxCandidates: 60, maxWork: 1_000_000 };
 const FINAL_UNIT: SolverLimits = { maxPeaks: 400, maxCandidates: 24, maxWork: 300_000 };
+/** For the share explained under precursor formulas other than the first. */
+const OVERVIEW: SolverLimits = { maxPeaks: 200, maxCandidates: 12, maxWork: 0 };
 /** Precursor candidates whose full trees are computed. */
 const FULL_TREES = 200;
 
@@ -240,7 +242,10 @@ class Suggester {
     annotator.stage(this.root, best.ion, this.charge);
     if (!result.proven) this.notes.push('The best tree was found by local search and is not proven to be the optimum.');
     const explained = explainedShare(annotator.spectra);
-    const candidates = ranked.slice(0, this.options.top).map((c, i) => this.report(ions, solver, c, i + 1, explained));
+    const overview = new StageSolver(ions, losses, this.sign, OVERVIEW);
+    const candidates = ranked
+      .slice(0, this.options.top)
+      .map((c, i) => this.report(ions, overview, c, i + 1, explained));
     return {
       charge: this.charge,
       adduct: best.adduct.name,
