@@ -165,7 +165,7 @@ describe('worker threads', () => {
       const { progress, state: now } = await jobOf(jobId);
       return now === 'running' && progress.done > 0 ? progress : null;
     });
-    expect(seen.what).toMatch(/MB|kB/);
+    expect(seen.what).toMatch(/MB|bytes/);
     await state(jobId, 'done', 60_000);
     await runner.stop();
     expect((await runOf(runId)).state).toBe('ready');

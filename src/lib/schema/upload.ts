@@ -38,9 +38,10 @@ export function uploadProblem(file: { name: string; size: number }, maxBytes: nu
   return null;
 }
 
-const gigabytes = (bytes: number): string =>
-  bytes >= 1e9 ? `${(bytes / 1e9).toFixed(2)} GB` : bytes >= 1e6 ? `${(bytes / 1e6).toFixed(1)} MB` : `${bytes} bytes`;
+/** Bytes in decimal units, e.g. "12.4 MB". */
+export const sizeText = (bytes: number): string =>
+  bytes >= 1e9 ? `${(bytes / 1e9).toFixed(2)} GB` : bytes >= 1e5 ? `${(bytes / 1e6).toFixed(1)} MB` : `${bytes} bytes`;
 
 /** Plain words for a file beyond the limit, with the cure. */
 export const tooLarge = (bytes: number, maxBytes: number): string =>
-  `The file has ${gigabytes(bytes)}; at most ${gigabytes(maxBytes)} are taken. Compress it with gzip (.mzML.gz), or export fewer scans.`;
+  `The file has ${sizeText(bytes)}; at most ${sizeText(maxBytes)} are taken. Compress it with gzip (.mzML.gz), or export fewer scans.`;

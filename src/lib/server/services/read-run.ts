@@ -5,7 +5,7 @@ import { createGunzip, inflateSync } from 'node:zlib';
 import { CoreError } from '$lib/core/errors';
 import { readMzml, type ReadOptions, type RunSummary } from '$lib/core/mzml';
 import type { RunInfo, RunWarning, Scan, ScanHeader } from '$lib/core/model';
-import { bytesText } from '$lib/components/ui/format';
+import { sizeText } from '$lib/schema/upload';
 import { packPeaks } from '../db/packing';
 import { runPrecursors, runs, scans } from '../db/schema';
 import { goOn, type JobContext } from '../jobs/job';
@@ -159,7 +159,7 @@ export async function readRunJob(context: JobContext) {
     context.report({
       done: bytes,
       total: run.bytes,
-      what: `Reading: ${bytesText(bytes)} of ${bytesText(run.bytes)}, ${count} scans`
+      what: `Reading: ${sizeText(bytes)} of ${sizeText(run.bytes)}, ${count} scans`
     });
   const options: ReadOptions = { ...platform, onProgress, isCancelled: context.isCancelled };
   for await (const event of readMzml(watched(await store.open(run.storageKey)), options)) {

@@ -1,9 +1,9 @@
-import { and, asc, desc, eq, inArray, sql } from 'drizzle-orm';
+import { and, asc, desc, eq, inArray, isNotNull, sql } from 'drizzle-orm';
 import { may } from '$lib/review/permissions';
 import type { PrecursorRow, RunRow } from '$lib/schema/run';
 import { requireRun, requireStudy, type Actor } from '../auth/authorize';
 import { database } from '../db';
-import { jobs, runPrecursors, runs, scans, studies, trees, users } from '../db/schema';
+import { ions, jobs, runPrecursors, runs, scans, studies, trees, users } from '../db/schema';
 import { ServiceError } from '../errors';
 import { fileStore } from '../storage';
 import { audit } from './audit';
@@ -70,6 +70,23 @@ async function precursorsOf(runId: string): Promise<PrecursorRow[]> {
   }));
 }
 
+/** Median error (ppm) of the ions that people confirmed in trees of the run; null below three of them. */
+async function massErrorOf(runId: string): Promise<{ median: number; ions: number } | null> {
+  const rows = await database()
+    .select({ error: ions.errorPpm })
+    .from(ions)
+    .innerJoin(trees, eq(trees.id, ions.treeId))
+    .where(and(eq(trees.runId, runId), eq(ions.state, 'confirmed'), isNotNull(ions.errorPpm)))
+    .limit(5000);
+  const errors = rows.flatMap(({ error }) => error ?? []).sort((a, b) => a - b);
+  const middle = errors.length >> 1;
+  if (errors.length < 3) return null;
+  return {
+    median: errors.length % 2 ? errors[middle] : (errors[middle - 1] + errors[middle]) / 2,
+    ions: errors.length
+  };
+}
+
 /** Everything of the run page. @throws ServiceError */
 export async function runPage(actor: Actor | null, studyId: string, runId: string) {
   const { run, study, role } = await requireRun(actor, runId, 'study.read', studyId);
@@ -92,6 +109,7 @@ export async function runPage(actor: Actor | null, studyId: string, runId: strin
     precursors: await precursorsOf(runId),
     current: currentTraces(current),
     scanCount: current.length,
+    massError: await massErrorOf(runId),
     reading: reading.get(runId) ?? null,
     building: building.get(runId) ?? null,
     can: { build: may(role, 'tree.build'), manage: may(role, 'run.manage'), upload: may(role, 'run.upload') }
