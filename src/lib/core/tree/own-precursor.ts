@@ -61,12 +61,14 @@ export function ownPrecursor(header: ScanHeader, levelOf: LevelOf): OwnPrecursor
   const stages = header.filterString === null ? [] : parseFilterString(header.filterString).path;
   const filterPath = stages.length === level - 1 ? stages.map((stage) => stage.mz) : null;
   const candidates = lastStage(header.precursors, level, levelOf).filter((record) => isolatedMz(record) !== null);
+  // A record of the last stage may refer to a scan of a wrong stage; it must not stand for that stage as well.
+  const others = header.precursors.filter((record) => !candidates.includes(record));
   const hint = filterPath?.at(-1) ?? null;
   const record = (hint === null ? null : nearest(candidates, hint)) ?? candidates[0] ?? null;
   const target = record ? isolatedMz(record) : hint;
   if (target === null || target <= 0) return null;
   const notches = Math.max(1, new Set(candidates.map(isolatedMz)).size);
-  const listed = level > 2 ? pathFromList(header.precursors, level, target, levelOf) : null;
+  const listed = level > 2 ? pathFromList(others, level, target, levelOf) : null;
   if (listed) return { record, target, notches, path: listed, pathFrom: 'precursor-list' };
   if (filterPath)
     return { record, target, notches, path: [...filterPath.slice(0, -1), target], pathFrom: 'filter-string' };
