@@ -12,7 +12,7 @@ export interface LayoutSteps {
   right: { leaf: number; layer: number };
 }
 
-export const STEPS: LayoutSteps = { down: { leaf: 132, layer: 82 }, right: { leaf: 44, layer: 190 } };
+export const STEPS: LayoutSteps = { down: { leaf: 116, layer: 66 }, right: { leaf: 38, layer: 176 } };
 
 const leavesOf = (branch: GraphBranch): number =>
   branch.children.length ? branch.children.reduce((sum, child) => sum + leavesOf(child), 0) : 1;

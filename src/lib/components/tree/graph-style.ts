@@ -50,7 +50,7 @@ export function graphStyle(colours: GraphColours): StylesheetJson {
       selector: 'node',
       style: {
         ...text,
-        ...{ shape: 'rectangle', width: 112, height: 34, label: 'data(label)', 'font-size': 12, 'line-height': 1.15 },
+        ...{ shape: 'rectangle', width: 106, height: 32, label: 'data(label)', 'font-size': 12, 'line-height': 1.15 },
         ...{ 'text-valign': 'center', 'text-halign': 'center', 'background-color': colours.sheet, 'border-width': 0 },
         ...{ 'background-image': 'data(image)', 'background-width': '12px', 'background-height': '12px' },
         ...{ 'background-position-x': '1px', 'background-position-y': '50%', 'background-clip': 'none' }
