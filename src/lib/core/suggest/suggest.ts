@@ -33,13 +33,13 @@ export interface SuggestControl {
   isCancelled?: () => boolean;
 }
 
-const RANKING: SolverLimits = { maxPeaks: 50, maxCandidates: 16, maxWork: 0 };
+const RANKING: SolverLimits = { maxPeaks: 35, maxCandidates: 10, maxWork: 0 };
 const FINAL: SolverLimits = { maxPeaks: 2000, maxCandidates: 60, maxWork: 1_000_000 };
 const FINAL_UNIT: SolverLimits = { maxPeaks: 400, maxCandidates: 24, maxWork: 300_000 };
 /** For the share explained under precursor formulas other than the first. */
-const OVERVIEW: SolverLimits = { maxPeaks: 200, maxCandidates: 12, maxWork: 0 };
+const OVERVIEW: SolverLimits = { maxPeaks: 100, maxCandidates: 6, maxWork: 0 };
 /** Precursor candidates whose full trees are computed. */
-const FULL_TREES = 200;
+const FULL_TREES = 100;
 
 /**
  * Proposes formulas for a whole tree: ranks the precursor's formulas by the best tree that each allows over all
