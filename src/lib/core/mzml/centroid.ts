@@ -51,6 +51,7 @@ function isSparse(mz: Float64Array): boolean {
 
 /** Decides between centroid and profile; the flag of the file is overruled only by a clear picture of the data. */
 export function isCentroided(peaks: PeakList, flag: boolean | null): boolean {
+  if (flag === true && isSparse(peaks.mz)) return true;
   const share = sampledShare(peaks);
   if (flag === true) return !(share !== null && share >= 0.8 && peaks.mz.length >= 50);
   if (flag === false) return isSparse(peaks.mz) || (share !== null && share <= 0.1 && peaks.mz.length >= 20);
