@@ -73,13 +73,13 @@ describe('graph', () => {
     expect(edges.map((e) => e.to.column - e.from.column)).toEqual([1, 1]);
   });
 
-  it('keeps at most forty ions and says how many it left out', () => {
+  it('keeps at most thirty ions and says how many it left out', () => {
     const content = sampleContent();
     for (let i = 0; i < 60; i++)
       content.ions.push(sampleIon(100 + i, { formula: `C${i + 20}H8`, mz: 60 + i, state: 'proposed', intensity: i }));
     const { nodes, leftOut } = layoutGraph(reportOf('', content).rows);
-    expect([nodes.length, leftOut]).toEqual([40, 23]);
-    expect(draw('figure=graph', content)).toContain('23 weaker formulas');
+    expect([nodes.length, leftOut]).toEqual([30, 33]);
+    expect(draw('figure=graph', content)).toContain('33 weaker formulas');
   });
 });
 

@@ -22,7 +22,7 @@ export interface GraphEdge {
 }
 
 /** Most ions that one drawing holds legibly. */
-export const MAX_NODES = 40;
+export const MAX_NODES = 30;
 
 const ranks = { confirmed: 0, proposed: 1, open: 2, rejected: 3 } as const;
 

@@ -4,7 +4,7 @@ import { mzDecimals, type Report } from './model';
 import { formulaAt, formulaWidth, head, INK, line, n, svgDocument, textAt } from './svg';
 
 const TOP = 52;
-const ROW = 40;
+const ROW = 32;
 const LEFT = 24;
 const SIZE = 11.5;
 const LOSS = 9.5;
