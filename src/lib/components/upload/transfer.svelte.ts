@@ -1,4 +1,4 @@
-import { DetailedError, Upload, type HttpResponse } from 'tus-js-client';
+import { defaultOptions, DetailedError, Upload, type HttpResponse } from 'tus-js-client';
 import { UPLOAD_CHUNK, uploadProblem } from '$lib/schema/upload';
 
 export type TransferState = 'queued' | 'sending' | 'checking' | 'paused' | 'done' | 'failed' | 'refused' | 'cancelled';
@@ -101,6 +101,14 @@ export class Transfer {
     }
     this.runId = refusal.details?.runId ?? null;
     this.set('refused', refusal.error, refusal.cure ?? null);
+    void this.forget();
+  }
+
+  /** Removes the browser's note of a transfer that cannot go on. */
+  private async forget(): Promise<void> {
+    const { urlStorage } = defaultOptions;
+    const notes = await urlStorage.findUploadsByFingerprint(fingerprint(this.file, this.studyId));
+    for (const { urlStorageKey } of notes) await urlStorage.removeUpload(urlStorageKey);
   }
 
   /** Starts, or goes on where an earlier attempt of this file stopped. */
@@ -125,9 +133,24 @@ export class Transfer {
     this.set('cancelled');
     // Where the server cannot be reached it removes the remains itself after two days.
     await begun?.abort(true).catch(() => undefined);
+    await this.forget();
   }
 
   get active(): boolean {
     return this.state === 'sending' || this.state === 'checking';
   }
+}
+
+/** Hours that the server keeps an unfinished transfer. */
+const KEPT = 48;
+
+/** Names of the files of a study whose transfer was interrupted and can go on; older notes are removed. */
+export async function interruptedNames(studyId: string): Promise<string[]> {
+  const names: string[] = [];
+  for (const { metadata, creationTime, urlStorageKey } of await defaultOptions.urlStorage.findAllUploads()) {
+    const age = Date.now() - Date.parse(creationTime);
+    if (age > KEPT * 3_600_000) await defaultOptions.urlStorage.removeUpload(urlStorageKey);
+    else if (metadata.studyId === studyId) names.push(metadata.filename);
+  }
+  return names;
 }

@@ -16,6 +16,13 @@ const WORK: Record<Exclude<JobKind, 'mail'>, Work> = {
   suggest: suggestJob
 };
 
+/** What to do about a core error that names no cure of its own. */
+const CURES: Record<keyof typeof WORK, string> = {
+  'read-run': 'Convert the original data to mzML again, and upload that file.',
+  'build-trees': 'Choose other precursor ions, or read the run again.',
+  suggest: 'Check the formula, the elements and the ion types in the settings of the tree, then start Suggest again.'
+};
+
 /** Adds where in the file it went wrong to the words of a core error. */
 function placed(error: CoreError): string {
   const { byte, scan } = error.place;
@@ -25,7 +32,14 @@ function placed(error: CoreError): string {
 }
 
 function failureOf(error: unknown, context: JobContext): JobFailure {
-  if (error instanceof CoreError) return { code: error.code, message: placed(error), cure: error.cure, again: false };
+  const { kind } = context.job;
+  if (error instanceof CoreError)
+    return {
+      code: error.code,
+      message: placed(error),
+      cure: error.cure ?? (kind === 'mail' ? null : CURES[kind]),
+      again: false
+    };
   if (error instanceof ServiceError)
     return { code: error.code, message: error.message, cure: error.cure, again: false };
   if (error instanceof MissingFile)
