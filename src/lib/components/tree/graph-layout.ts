@@ -12,38 +12,78 @@ export interface LayoutSteps {
   right: { leaf: number; layer: number };
 }
 
-export const STEPS: LayoutSteps = { down: { leaf: 116, layer: 66 }, right: { leaf: 38, layer: 176 } };
+export const STEPS: LayoutSteps = { down: { leaf: 126, layer: 60 }, right: { leaf: 38, layer: 176 } };
 
-const leavesOf = (branch: GraphBranch): number =>
-  branch.children.length ? branch.children.reduce((sum, child) => sum + leavesOf(child), 0) : 1;
-const depthOf = (branch: GraphBranch): number => 1 + Math.max(0, ...branch.children.map(depthOf));
+/** Subtree placed for itself: across of each node, and how far it reaches on each layer below its root. */
+interface Block {
+  across: Map<string, number>;
+  root: number;
+  left: number[];
+  right: number[];
+}
 
-/** Layers go down while the tree is narrow, and to the right once its leaves outnumber what fits side by side. */
-export function directionOf(roots: readonly GraphBranch[], aspect: number): 'down' | 'right' {
-  const leaves = roots.reduce((sum, root) => sum + leavesOf(root), 0);
-  const depth = Math.max(1, ...roots.map(depthOf));
-  const fit = (width: number, height: number) => Math.min(aspect / width, 1 / height);
-  const down = fit(leaves * STEPS.down.leaf, depth * STEPS.down.layer);
-  const right = fit(depth * STEPS.right.layer, leaves * STEPS.right.leaf);
-  return down >= right ? 'down' : 'right';
+/** Sets blocks side by side, as close as the leaf step allows on every layer. */
+function sideBySide(blocks: readonly Block[], leaf: number): Block {
+  const across = new Map<string, number>();
+  const left: number[] = [];
+  const right: number[] = [];
+  const roots: number[] = [];
+  for (const block of blocks) {
+    let shift = -Infinity;
+    block.left.forEach((x, depth) => (shift = Math.max(shift, (right[depth] ?? -Infinity) + leaf - x)));
+    if (shift === -Infinity) shift = 0;
+    for (const [key, x] of block.across) across.set(key, x + shift);
+    block.right.forEach((x, depth) => (right[depth] = x + shift));
+    block.left.forEach((x, depth) => (left[depth] ??= x + shift));
+    roots.push(block.root + shift);
+  }
+  return { across, root: ((roots[0] ?? 0) + (roots[roots.length - 1] ?? 0)) / 2, left, right };
+}
+
+function blockOf(branch: GraphBranch, leaf: number): Block {
+  const below = sideBySide(
+    branch.children.map((child) => blockOf(child, leaf)),
+    leaf
+  );
+  const { across, root } = below;
+  across.set(branch.node.key, root);
+  return { across, root, left: [root, ...below.left], right: [root, ...below.right] };
+}
+
+function depths(branches: readonly GraphBranch[], depth: number, found: Map<string, number>): Map<string, number> {
+  for (const { node, children } of branches) {
+    found.set(node.key, depth);
+    depths(children, depth + 1, found);
+  }
+  return found;
 }
 
 /**
- * Places a forest in layers: every leaf gets its own step, every ion stands over the middle of those that hang on it,
- * and no two nodes of one layer come closer than a leaf step.
+ * Places a forest in layers: every ion stands over the middle of those that hang on it, subtrees as close together as
+ * they fit, and no two nodes of one layer come closer than a leaf step.
  * @returns position of each node's centre in pixels by its key
  */
 export function layOut(roots: readonly GraphBranch[], direction: 'down' | 'right'): Map<string, Point> {
   const { leaf, layer } = STEPS[direction];
-  const at = new Map<string, Point>();
-  let next = 0;
-  const place = (branch: GraphBranch, depth: number): number => {
-    const below = branch.children.map((child) => place(child, depth + 1));
-    const across = below.length ? (below[0] + below[below.length - 1]) / 2 : next++ * leaf;
-    const along = depth * layer;
-    at.set(branch.node.key, direction === 'down' ? { x: across, y: along } : { x: along, y: across });
-    return across;
+  const { across } = sideBySide(
+    roots.map((root) => blockOf(root, leaf)),
+    leaf
+  );
+  const depth = depths(roots, 0, new Map());
+  return new Map(
+    [...across].map(([key, x]) => {
+      const along = (depth.get(key) ?? 0) * layer;
+      return [key, direction === 'down' ? { x, y: along } : { x: along, y: x }];
+    })
+  );
+}
+
+/** Layers go down while the tree is narrow, and to the right where that fits a window of this aspect better. */
+export function directionOf(roots: readonly GraphBranch[], aspect: number): 'down' | 'right' {
+  const fit = (direction: 'down' | 'right') => {
+    const points = [...layOut(roots, direction).values()];
+    const span = (pick: (p: Point) => number) => Math.max(...points.map(pick)) - Math.min(...points.map(pick));
+    return points.length ? Math.min(aspect / (span((p) => p.x) + 100), 1 / (span((p) => p.y) + 30)) : 0;
   };
-  for (const root of roots) place(root, 0);
-  return at;
+  return fit('down') >= fit('right') ? 'down' : 'right';
 }

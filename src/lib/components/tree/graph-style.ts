@@ -50,7 +50,7 @@ export function graphStyle(colours: GraphColours): StylesheetJson {
       selector: 'node',
       style: {
         ...text,
-        ...{ shape: 'rectangle', width: 106, height: 32, label: 'data(label)', 'font-size': 12, 'line-height': 1.15 },
+        ...{ shape: 'rectangle', width: 98, height: 30, label: 'data(label)', 'font-size': 12, 'line-height': 1.15 },
         ...{ 'text-valign': 'center', 'text-halign': 'center', 'background-color': colours.sheet, 'border-width': 0 },
         ...{ 'background-image': 'data(image)', 'background-width': '12px', 'background-height': '12px' },
         ...{ 'background-position-x': '1px', 'background-position-y': '50%', 'background-clip': 'none' }
@@ -64,7 +64,10 @@ export function graphStyle(colours: GraphColours): StylesheetJson {
         ...text,
         ...{ 'curve-style': 'unbundled-bezier', 'control-point-distances': 'data(bend)' as never },
         ...{ 'control-point-weights': [0.25, 0.75], 'source-endpoint': 'outside-to-node' },
-        ...{ label: 'data(label)', 'font-size': 10.5, color: colours.ink2, 'target-arrow-shape': 'none' },
+        // Beside the line and near the ion it leads to: a label on the line would make a solid one look broken.
+        ...{ 'target-label': 'data(label)', 'target-text-offset': 'data(along)' as never },
+        ...{ 'target-text-margin-x': 'data(aside)' as never, 'target-text-margin-y': 'data(above)' as never },
+        ...{ 'font-size': 10, color: colours.ink2, 'target-arrow-shape': 'none' },
         ...{ 'text-background-color': colours.sheet, 'text-background-opacity': 1, 'text-background-padding': '2px' }
       }
     },
@@ -73,6 +76,6 @@ export function graphStyle(colours: GraphColours): StylesheetJson {
       selector: 'edge[!measured]',
       style: { width: 1, 'line-color': colours.ink2, 'line-style': 'dashed', 'line-dash-pattern': [4, 3] }
     },
-    { selector: 'edge[!primary]', style: { label: '', opacity: 0.45, 'z-index': 0 } }
+    { selector: 'edge[!primary]', style: { 'target-label': '', opacity: 0.45, 'z-index': 0 } }
   ];
 }

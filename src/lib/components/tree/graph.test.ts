@@ -76,6 +76,13 @@ describe('layOut', () => {
     expect(directionOf(wide, 2)).toBe('right');
     expect(directionOf(branchesOf(graphOf([top, middle, low])), 2)).toBe('down');
   });
+  it('moves a leaf over the free room beside a deep neighbour', () => {
+    const [a, b] = [ion('C9H9', 117, ['C19H25N2O5', 361.18, 'X']), ion('C8H8', 104, ['C19H25N2O5', 361.18, 'X'])];
+    const below = [0, 1, 2].map((i) => ion(`C${7 - i}H5`, 90 - i, ['C9H9', 117, 'Y']));
+    const at = layOut(branchesOf(graphOf([top, a, b, ...below])), 'down');
+    const [left, right] = [at.get('C9H9 1'), at.get('C8H8 1')];
+    expect((right?.x ?? 0) - (left?.x ?? 0)).toBeCloseTo(STEPS.down.leaf, 9);
+  });
   it('has a place for every node', () => {
     expect(layOut(wide, 'right').size).toBe(13);
   });

@@ -84,7 +84,9 @@ async function breakdown(
     window
   );
   const unit = same.find((s) => s.energyUnit)?.energyUnit;
-  return points.length > 1 ? { unit: unit === 'eV' || unit === '%' ? unit : null, points } : null;
+  return points.length > 1 && points.some((p) => p.share > 0)
+    ? { unit: unit === 'eV' || unit === '%' ? unit : null, points }
+    : null;
 }
 
 /** m/z distances at which a second isotope shows, by the ion's elements; carbon alone while no formula is known. */
