@@ -1,5 +1,6 @@
 import { eq } from 'drizzle-orm';
 import { spawn, type ChildProcess } from 'node:child_process';
+import { once } from 'node:events';
 import { createServer, connect as dial, type Server, type Socket } from 'node:net';
 import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest';
 import type { Actor } from '$lib/server/auth/authorize';
@@ -210,7 +211,9 @@ describe('accidents', () => {
     const { runId, jobId } = await addRun(database(), place, smallRun(4000));
     const child = runnerProcess();
     await until(async () => (await database().$count(scans, eq(scans.runId, runId))) > 0, 60_000);
+    const ended = once(child, 'exit');
     child.kill('SIGKILL');
+    await ended;
     expect((await runOf(runId)).state).toBe('reading');
     const runner = newRunner({ heartbeat: 60_000 });
     runner.start();
