@@ -12,6 +12,8 @@ import { gunzip, hashedFile, inflate, sha1 } from './platform';
 export interface AnnotateOptions {
   /** m/z; null for all precursor ions. */
   precursorMz: number | null;
+  /** one spectrum per isolation path whatever the collision energy. */
+  mergeEnergies: boolean;
   suggest: SuggestOptions;
 }
 
@@ -35,7 +37,10 @@ export async function assembleFile(path: string, options: AnnotateOptions): Prom
   const hash = createHash('sha1');
   const { scans, summary } = await readRun(hashedFile(path, hash), { inflate, gunzip, sha1 });
   const wanted = options.precursorMz;
-  const assembly = assemble(scans, summary.info, wanted === null ? {} : { precursorMz: wanted });
+  const assembly = assemble(scans, summary.info, {
+    separateEnergies: !options.mergeEnergies,
+    ...(wanted === null ? {} : { precursorMz: wanted })
+  });
   const warnings = [...summary.warnings, ...assembly.warnings].map(warningText);
   if (assembly.orphans.length > 0) {
     const [first] = assembly.orphans;

@@ -135,6 +135,26 @@ describe('annotate', { timeout: 120_000 }, () => {
     expect(stderr).toContain('c.mzML');
   });
 
+  it('keeps collision energies apart unless asked to merge them', () => {
+    const run = caffeine();
+    const [survey, low, deeper] = run.scans;
+    const high = {
+      ...low,
+      id: 'scan=4',
+      precursors: (low.precursors ?? []).map((entry) => ({ ...entry, energy: 60 }))
+    };
+    const file = join(folder, 'energies.mzML');
+    writeFileSync(file, writeMzml({ ...run, scans: [survey, low, deeper, high] }));
+    const energies = (...args: string[]) => {
+      const { trees } = JSON.parse(annotate(file, ...args).stdout) as {
+        trees: { spectra: { energies: number[] }[] }[];
+      };
+      return trees[0].spectra.map((spectrum) => spectrum.energies);
+    };
+    expect(energies('--formula', 'C8H10N4O2')).toEqual([[30], [60], [30]]);
+    expect(energies('--formula', 'C8H10N4O2', '--merge-energies')).toEqual([[30, 60], [30]]);
+  });
+
   it('selects one precursor ion and warns when there is none', () => {
     const { status, stdout } = annotate(good, '--precursor-mz', '500');
     expect(status).toBe(0);

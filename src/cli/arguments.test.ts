@@ -14,6 +14,7 @@ describe('readCall', () => {
       'C0-9H0-9',
       '--tolerance-ppm',
       '5',
+      '--merge-energies',
       '--top',
       '3',
       'b.mzML'
@@ -21,6 +22,7 @@ describe('readCall', () => {
     expect(call.paths).toEqual(['a.mzML', 'b.mzML']);
     expect(call.options).toMatchObject({
       precursorMz: 304.15,
+      mergeEnergies: true,
       suggest: {
         adducts: ['[M-H]-'],
         formula: 'C17H21NO4',
@@ -34,6 +36,7 @@ describe('readCall', () => {
   it('has the documented defaults', () => {
     expect(readCall(['a.mzML']).options).toMatchObject({
       precursorMz: null,
+      mergeEnergies: false,
       suggest: { adducts: [], formula: null, tolerance: null, top: 10 }
     });
   });

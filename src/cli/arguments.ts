@@ -35,6 +35,8 @@ Options
                        default: by the analyser of each scan
   --top N              number of precursor formulas to report, 1 to 1000
                        default: 10
+  --merge-energies     merge spectra of one isolation path across collision energies to one spectrum
+                       default: each energy keeps its own spectrum
   --help               this text
 
 Exit status
@@ -52,10 +54,12 @@ const DEFINITIONS = {
   'tolerance-ppm': STRING,
   'tolerance-mda': STRING,
   top: STRING,
+  'merge-energies': { type: 'boolean' },
   help: { type: 'boolean', short: 'h' }
 } as const;
 
-type Name = Exclude<keyof typeof DEFINITIONS, 'help'>;
+type Name = Exclude<keyof typeof DEFINITIONS, 'help' | 'merge-energies'>;
+type Switches = { help?: boolean; 'merge-energies'?: boolean };
 type Values = Partial<Record<Name, string[]>>;
 
 function single(values: Values, name: Name): string | undefined {
@@ -106,7 +110,7 @@ function checked<T>(name: Name, text: string | undefined, parse: (text: string) 
  * @throws CallError with one line that says what is wrong
  */
 export function readCall(args: readonly string[]): Call {
-  let parsed: { values: Values & { help?: boolean }; positionals: string[] };
+  let parsed: { values: Values & Switches; positionals: string[] };
   try {
     parsed = parseArgs({ args: joinValues(args), options: DEFINITIONS, allowPositionals: true });
   } catch (error) {
@@ -126,6 +130,7 @@ export function readCall(args: readonly string[]): Call {
     paths: positionals,
     options: {
       precursorMz: positiveNumber(values, 'precursor-mz', 'm/z') ?? null,
+      mergeEnergies: values['merge-energies'] ?? false,
       suggest: {
         ...defaults,
         adducts: adduct === undefined ? [] : [adduct],
@@ -144,7 +149,8 @@ function joinValues(args: readonly string[]): string[] {
   for (let i = 0; i < args.length; i++) {
     const name = args[i].startsWith('--') ? args[i].slice(2) : '';
     if (args[i] === '--') return [...joined, ...args.slice(i)];
-    const takesValue = name !== 'help' && Object.hasOwn(DEFINITIONS, name);
+    const takesValue =
+      Object.hasOwn(DEFINITIONS, name) && DEFINITIONS[name as keyof typeof DEFINITIONS].type === 'string';
     if (takesValue && i + 1 < args.length) joined.push(`${args[i]}=${args[++i]}`);
     else joined.push(args[i]);
   }
