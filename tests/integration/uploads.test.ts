@@ -280,9 +280,9 @@ describe('a file that cannot be used', () => {
 
 describe('authorisation', () => {
   it.each([
-    ['a person who is not signed in', () => null, 'unauthenticated'],
-    ['a member of another group', () => stranger, 'not-found'],
-    ['a reviewer', () => reviewer, 'forbidden']
+    ['a person who is not signed in', (): Actor | null => null, 'unauthenticated'],
+    ['a member of another group', (): Actor | null => stranger, 'not-found'],
+    ['a reviewer', (): Actor | null => reviewer, 'forbidden']
   ] as const)('%s begins no transfer', async (_name, who, code) => {
     const { length } = await database().select().from(uploads);
     expect((await refusal(begin({ bytes: 10, actor: who() }))).code).toBe(code);
