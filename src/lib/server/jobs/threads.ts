@@ -12,9 +12,10 @@ const HEAP = 1536;
 function entry(env: NodeJS.ProcessEnv): { file: string; options: WorkerOptions } {
   const options: WorkerOptions = { env, resourceLimits: { maxOldGenerationSizeMb: HEAP } };
   if (import.meta.env?.PROD) {
+    // Beside the server that runs: another build of the same checkout may lie in the usual place.
     const places = [
-      resolve('build/workers/worker.mjs'),
-      resolve(dirname(process.argv[1] ?? '.'), 'workers/worker.mjs')
+      resolve(dirname(process.argv[1] ?? '.'), 'workers/worker.mjs'),
+      resolve('build/workers/worker.mjs')
     ];
     const file = places.find((place) => existsSync(place));
     if (!file) throw new Error(`The worker of this build is missing (${places.join(', ')}). Run \`npm run build\`.`);
