@@ -69,6 +69,10 @@ export interface Report {
 /** Decimals of m/z: unit resolution knows one. */
 export const mzDecimals = (report: Pick<Report, 'unitResolution'>): number => (report.unitResolution ? 1 : 4);
 
+/** Says how many ions the reader's choice left out. */
+export const leftOutText = (n: number): string =>
+  n === 1 ? 'One ion is not listed by choice.' : `${n} ions are not listed by choice.`;
+
 function chosen(ion: FrozenIon, ions: ReportOptions['ions']): boolean {
   if (ions === 'all') return true;
   if (ion.formula === null) return false;

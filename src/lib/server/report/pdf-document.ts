@@ -1,7 +1,7 @@
-import type { Content, ContentTable, TableCell, TDocumentDefinitions } from 'pdfmake/interfaces';
+import type { Column, Content, ContentTable, TableCell, TDocumentDefinitions } from 'pdfmake/interfaces';
 import { CAUTION } from '$lib/review/report/caution';
 import { columnsOf } from '$lib/review/report/columns';
-import { mzDecimals, type Report } from '$lib/review/report/model';
+import { leftOutText, mzDecimals, type Report } from '$lib/review/report/model';
 import { INK } from '$lib/review/report/svg';
 import { cellContent, ionRuns, ionTypeRuns, formulaRuns, MONO, mzRuns, proseRuns, SANS } from './pdf-text';
 
@@ -15,7 +15,7 @@ const when = (iso: string): string => `${day.format(new Date(iso))} UTC`;
 
 const heading = (text: string): Content => ({ text, bold: true, fontSize: 10.5, margin: [0, 14, 0, 4] });
 
-function fact(name: string, value: Content): Content {
+function fact(name: string, value: Content): Column {
   return { stack: [{ text: mzRuns(name), fontSize: 7.5, color: INK.ink2 }, value], width: 'auto' };
 }
 
@@ -59,7 +59,7 @@ function ionTable(report: Report): Content {
   const further = report.rows.length - rows.length;
   const notes = [
     'Intensities are percent of the base peak of their spectrum; calculated m/z count the electron; errors come from unrounded values.',
-    ...(report.leftOut ? [`${report.leftOut} ions are not listed by choice.`] : []),
+    ...(report.leftOut ? [leftOutText(report.leftOut)] : []),
     ...(further ? [`${further} further ions are in the CSV file.`] : [])
   ];
   return [
@@ -142,7 +142,7 @@ export function reportDocument(report: Report, svg: string): TDocumentDefinition
       heading('Ions'),
       ionTable(report),
       heading('Methods'),
-      ...report.methods.map((text): Content => ({ text: proseRuns(text), margin: [0, 0, 0, 4] })),
+      ...report.methods.map((text): Content => ({ text: proseRuns(text, report.tree), margin: [0, 0, 0, 4] })),
       heading('Confidence'),
       { text: report.confidence.text },
       ...(report.confidence.note ? [{ text: report.confidence.note, color: INK.ink2 }] : []),

@@ -1,5 +1,7 @@
 import type { Content, ContentText } from 'pdfmake/interfaces';
 import { chargeText, type Cell } from '$lib/review/report/columns';
+import type { Report } from '$lib/review/report/model';
+import { proseParts } from '$lib/review/report/prose';
 
 export const MONO = 'IBM Plex Mono';
 export const SANS = 'IBM Plex Sans';
@@ -34,16 +36,15 @@ export const mzRuns = (text: string): Content[] =>
     .filter(Boolean)
     .map((part) => (part === 'm/z' ? { text: part, italics: true } : { text: part }));
 
-/** Text of a paragraph; stages MS2, MS3 … with their number raised. */
-export const proseRuns = (text: string): Content[] =>
-  text
-    .split(/(\bMS\d+\b|m\/z)/)
-    .filter(Boolean)
-    .flatMap((part): Content[] => {
-      const stage = /^MS(\d+)$/.exec(part);
-      if (stage) return [{ text: 'MS' }, stageNumber(stage[1])];
-      return part === 'm/z' ? [{ text: part, italics: true }] : [{ text: part }];
-    });
+/** A paragraph with stages raised, m/z in italics, formula and ion type set as such. */
+export const proseRuns = (text: string, tree: Report['tree']): Content[] =>
+  proseParts(text, tree).flatMap((part): Content[] => {
+    if (part.kind === 'stage') return [{ text: 'MS' }, stageNumber(part.text.slice(2))];
+    if (part.kind === 'formula') return formulaRuns(part.text);
+    if (part.kind === 'ion-type') return ionTypeRuns(part.text);
+    if (part.kind === 'hash') return [{ text: part.text, font: MONO, fontSize: 7.5 }];
+    return [part.kind === 'mz' ? { text: part.text, italics: true } : { text: part.text }];
+  });
 
 export function cellContent(cell: Cell, right: boolean): ContentText {
   const alignment = right ? 'right' : 'left';
