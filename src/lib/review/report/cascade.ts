@@ -68,6 +68,11 @@ function stick(row: ReportRow, base: number, scale: Scale): string {
   );
 }
 
+/** Sticks drawn in one lane at most; the table lists what is weaker. */
+const MOST_STICKS = 150;
+const strongest = (rows: readonly ReportRow[]): ReportRow[] =>
+  [...rows].sort((a, b) => b.intensity - a.intensity).slice(0, MOST_STICKS);
+
 /** m/z above each stick, with the formula over it, strongest first, as far as there is room. */
 function labelsOf(
   rows: readonly ReportRow[],
@@ -162,7 +167,7 @@ export function cascadeSvg(report: Report): string {
   const blocked = arrows.map(({ x, from, to }): Box => ({ left: x - 3, right: x + 3, top: from + 1, bottom: to }));
   const body = lanes.map((spectrum) => {
     const base = baseOf.get(spectrum.index)!;
-    const own = report.rows.filter((row) => row.spectrum === spectrum.index);
+    const own = strongest(report.rows.filter((row) => row.spectrum === spectrum.index));
     return (
       laneHead(spectrum, base, decimals) +
       own.map((row) => stick(row, base, scale)).join('') +

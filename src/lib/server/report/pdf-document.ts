@@ -6,7 +6,7 @@ import { INK } from '$lib/review/report/svg';
 import { cellContent, ionRuns, ionTypeRuns, formulaRuns, MONO, mzRuns, proseRuns, SANS } from './pdf-text';
 
 /** Rows that one PDF prints; more belong into the CSV, and typesetting them would hold the server up. */
-export const MOST_ROWS = 1500;
+export const MOST_ROWS = 1000;
 /** Printable area of A4 inside the margins, in points. */
 const [WIDTH, FIGURE_HEIGHT] = [515, 590];
 
