@@ -2,6 +2,7 @@
 import { CoreError } from '../errors';
 import { ByteWindow } from './byte-window';
 import type { ReadLimits, StreamingHash } from './options';
+import type { SpectrumRecord } from './record';
 import { named, nextMarkup, type Markup } from './tags';
 
 export interface HeadPiece {
@@ -14,8 +15,8 @@ export interface SpectrumPiece {
   /** absolute offset and length in the (uncompressed) stream. */
   byte: number;
   length: number;
-  /** the spectrum's XML without the text of its `binary` elements. */
-  xml: string;
+  /** the spectrum's XML without the text of its `binary` elements; the record taken from it where the form is common. */
+  content: string | SpectrumRecord;
   /** base64 text of each `binary` element in order; valid until the next `push`. */
   binaries: Uint8Array[];
 }
@@ -229,7 +230,7 @@ export class Cutter {
         scan: null
       });
     }
-    return { kind: 'spectrum', byte: start, length: end - start, xml, binaries };
+    return { kind: 'spectrum', byte: start, length: end - start, content: xml, binaries };
   }
 
   private checkSize(): void {

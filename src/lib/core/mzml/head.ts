@@ -24,7 +24,7 @@ export interface FileHead {
 const NOT_MODELS = new Set<string>([CV.instrumentModel, 'MS:1000529', 'MS:1000032']);
 
 function component(list: XmlElement[], groups: ParamGroups): Params[] {
-  return list.map((element) => Params.of(element, groups));
+  return list.map((element) => Params.ofElement(element, groups));
 }
 
 /** The last analyser that the ions reach is the one that records the spectrum. */
@@ -45,7 +45,7 @@ function readConfiguration(element: XmlElement, groups: ParamGroups): Instrument
   const components = child(element, 'componentList');
   const sources = components ? component(children(components, 'source'), groups) : [];
   const kind = sources.flatMap((params) => params.all).map((param) => SOURCES.get(param.accession ?? ''));
-  const params = Params.of(element, groups);
+  const params = Params.ofElement(element, groups);
   const model = params.all.find((param) => param.accession?.startsWith('MS:') && !NOT_MODELS.has(param.accession));
   return {
     source: kind.findLast((source) => source !== undefined) ?? 'unknown',
@@ -56,7 +56,7 @@ function readConfiguration(element: XmlElement, groups: ParamGroups): Instrument
 
 function centroidedByContent(mzml: XmlElement, groups: ParamGroups): boolean | null {
   const description = child(mzml, 'fileDescription');
-  const content = Params.of(description ? child(description, 'fileContent') : null, groups);
+  const content = Params.ofElement(description ? child(description, 'fileContent') : null, groups);
   const centroid = content.has(CV.centroid);
   return centroid === content.has(CV.profile) ? null : centroid;
 }

@@ -1,5 +1,6 @@
 /** Controlled-vocabulary and user parameters of an element, with the referenced groups resolved. */
 import { CoreError } from '../errors';
+import type { ParamSet } from './record';
 import { attribute, children, type XmlElement } from './xml';
 
 export interface Param {
@@ -12,29 +13,39 @@ export interface Param {
 
 export type ParamGroups = ReadonlyMap<string, Param[]>;
 
-function readParam(element: XmlElement): Param {
+function readParam(element: XmlElement, controlled: boolean): Param {
   return {
-    accession: attribute(element, 'accession'),
+    accession: controlled ? attribute(element, 'accession') : null,
     name: attribute(element, 'name') ?? '',
     value: attribute(element, 'value') ?? '',
     unit: attribute(element, 'unitAccession')
   };
 }
 
+/** The parameters written in an element; none where there is no element. */
+export function elementParams(element: XmlElement | null): ParamSet {
+  if (!element) return { refs: [], own: [] };
+  return {
+    refs: children(element, 'referenceableParamGroupRef').map((reference) => attribute(reference, 'ref') ?? ''),
+    own: [
+      ...children(element, 'cvParam').map((param) => readParam(param, true)),
+      ...children(element, 'userParam').map((param) => readParam(param, false))
+    ]
+  };
+}
+
 /** Parameters of one element; looked up by accession, never by the name of the term, which changes between versions. */
 export class Params {
-  private constructor(private readonly list: Param[]) {}
+  private constructor(private readonly list: readonly Param[]) {}
 
   /** Referenced groups come first, so that the element's own parameters win. */
-  static of(element: XmlElement | null, groups: ParamGroups): Params {
-    if (!element) return new Params([]);
-    const list: Param[] = [];
-    for (const reference of children(element, 'referenceableParamGroupRef')) {
-      list.push(...(groups.get(attribute(reference, 'ref') ?? '') ?? []));
-    }
-    for (const param of children(element, 'cvParam')) list.push(readParam(param));
-    for (const param of children(element, 'userParam')) list.push({ ...readParam(param), accession: null });
-    return new Params(list);
+  static of({ refs, own }: ParamSet, groups: ParamGroups): Params {
+    if (refs.length === 0) return new Params(own);
+    return new Params([...refs.flatMap((ref) => groups.get(ref) ?? []), ...own]);
+  }
+
+  static ofElement(element: XmlElement | null, groups: ParamGroups): Params {
+    return Params.of(elementParams(element), groups);
   }
 
   get all(): readonly Param[] {
@@ -42,21 +53,27 @@ export class Params {
   }
 
   has(accession: string): boolean {
-    return this.list.some((param) => param.accession === accession);
+    for (const param of this.list) if (param.accession === accession) return true;
+    return false;
   }
 
   /** The last parameter of that accession; userParams that carry the accession as their name count too. */
   find(accession: string): Param | null {
-    return (
-      this.list.findLast((param) => param.accession === accession) ??
-      this.list.findLast((param) => param.accession === null && param.name === accession) ??
-      null
-    );
+    for (let i = this.list.length - 1; i >= 0; i--) if (this.list[i].accession === accession) return this.list[i];
+    return this.lastUser(accession);
   }
 
   /** The last userParam of that name. */
   user(name: string): string | null {
-    return this.list.findLast((param) => param.accession === null && param.name === name)?.value ?? null;
+    return this.lastUser(name)?.value ?? null;
+  }
+
+  private lastUser(name: string): Param | null {
+    for (let i = this.list.length - 1; i >= 0; i--) {
+      const param = this.list[i];
+      if (param.accession === null && param.name === name) return param;
+    }
+    return null;
   }
 
   /**
@@ -89,7 +106,7 @@ export function readParamGroups(list: XmlElement | null): ParamGroups {
   const groups = new Map<string, Param[]>();
   if (!list) return groups;
   for (const group of children(list, 'referenceableParamGroup')) {
-    groups.set(attribute(group, 'id') ?? '', [...Params.of(group, new Map()).all]);
+    groups.set(attribute(group, 'id') ?? '', [...Params.ofElement(group, new Map()).all]);
   }
   return groups;
 }

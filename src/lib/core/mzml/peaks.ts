@@ -4,8 +4,8 @@ import type { PeakList } from '../model';
 import { decodeArray, describeArray } from './arrays';
 import type { ReadSettings } from './options';
 import { Params, type ParamGroups } from './params';
+import type { SpectrumRecord } from './record';
 import type { WarningCollector } from './warnings';
-import { attribute, child, children, type XmlElement } from './xml';
 
 export const NO_PEAKS: PeakList = { mz: new Float64Array(0), intensity: new Float64Array(0) };
 
@@ -15,33 +15,45 @@ export interface ArraySet {
   intensity: Float64Array | null;
   /** number of arrays of any kind. */
   count: number;
+  /** an array states another length of its base64 text than it has. */
+  wrongLength: boolean;
 }
 
-function declaredLength(element: XmlElement, fallback: number): number {
-  const text = attribute(element, 'arrayLength');
+function declaredLength(text: string | null, fallback: number): number {
   const value = text === null ? fallback : Number(text);
   return Number.isInteger(value) && value >= 0 ? value : fallback;
 }
 
+/** True when the stated length fits neither the text as it stands nor the text without white space. */
+function isWrongLength(stated: string | null, text: Uint8Array): boolean {
+  const length = Number(stated ?? NaN);
+  if (!Number.isFinite(length) || length === text.length) return false;
+  let letters = 0;
+  for (const byte of text) if (byte > 32) letters++;
+  return length !== letters;
+}
+
+const NO_TEXT = new Uint8Array(0);
+
 /** Finds and decodes the m/z and intensity arrays; every other array is left alone. */
 export function readArrays(
-  spectrum: XmlElement,
+  record: SpectrumRecord,
   binaries: readonly Uint8Array[],
   groups: ParamGroups,
   settings: ReadSettings
 ): ArraySet {
-  const list = child(spectrum, 'binaryDataArrayList');
-  const set: ArraySet = { mz: null, intensity: null, count: 0 };
-  const declared = Number(attribute(spectrum, 'defaultArrayLength') ?? 0) || 0;
+  const set: ArraySet = { mz: null, intensity: null, count: 0, wrongLength: false };
+  const declared = Number(record.defaultArrayLength ?? 0) || 0;
   let at = 0;
-  for (const element of list ? children(list, 'binaryDataArray') : []) {
-    const text = children(element, 'binary').length > 0 ? binaries[at++] : undefined;
+  for (const array of record.arrays) {
+    const text = (array.hasBinary ? binaries[at++] : undefined) ?? NO_TEXT;
     set.count++;
-    const description = describeArray(Params.of(element, groups));
+    set.wrongLength ||= isWrongLength(array.encodedLength, text);
+    const description = describeArray(Params.of(array.params, groups));
     const kind = description.kind;
     if (kind === 'other' || set[kind] !== null) continue;
     if (!settings.peaks) set[kind] = new Float64Array(0);
-    else set[kind] = decodeArray(text ?? new Uint8Array(0), description, declaredLength(element, declared), settings);
+    else set[kind] = decodeArray(text, description, declaredLength(array.arrayLength, declared), settings);
   }
   return set;
 }

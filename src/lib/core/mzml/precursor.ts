@@ -3,7 +3,8 @@ import type { PrecursorRecord } from '../model';
 import { ACTIVATIONS, CV } from './cv';
 import type { FilterString } from './filter-string';
 import { Params, type ParamGroups } from './params';
-import { attribute, child, children, type XmlElement } from './xml';
+import type { PrecursorText } from './record';
+import { detached } from './detached';
 
 type Energy = Pick<PrecursorRecord, 'energy' | 'energyUnit'>;
 
@@ -40,37 +41,37 @@ function readEnergy(params: Params): Energy {
 }
 
 /** Stage of the scan the ion was isolated from: userParam "ms level", in the isolation window or (older) the precursor. */
-function readLevel(element: XmlElement, window: Params, groups: ParamGroups): number | null {
-  const text = window.user('ms level') ?? Params.of(element, groups).user('ms level');
+function readLevel(written: PrecursorText, window: Params, groups: ParamGroups): number | null {
+  const text = window.user('ms level') ?? Params.of(written.params, groups).user('ms level');
   const level = text === null ? NaN : Number(text);
   return Number.isInteger(level) && level > 0 ? level : null;
 }
 
-function readPrecursor(element: XmlElement, groups: ParamGroups): PrecursorRecord {
-  const window = Params.of(child(element, 'isolationWindow'), groups);
-  const ions = child(element, 'selectedIonList');
-  const ion = Params.of(ions ? child(ions, 'selectedIon') : null, groups);
-  const activation = Params.of(child(element, 'activation'), groups);
+function readActivations(activation: Params): string[] {
+  const names: string[] = [];
+  for (const { accession } of activation.all) {
+    const name = accession === null ? undefined : ACTIVATIONS.get(accession);
+    if (name !== undefined && !names.includes(name)) names.push(name);
+  }
+  return names;
+}
+
+/** One precursor record. */
+export function readPrecursor(written: PrecursorText, groups: ParamGroups): PrecursorRecord {
+  const window = Params.of(written.window, groups);
+  const ion = Params.of(written.ion, groups);
+  const activation = Params.of(written.activation, groups);
   const charge = ion.number(CV.charge, CV.possibleCharge);
-  const names = activation.all
-    .map((param) => ACTIVATIONS.get(param.accession ?? ''))
-    .filter((name) => name !== undefined);
   return {
-    spectrumRef: attribute(element, 'spectrumRef') || null,
-    level: readLevel(element, window, groups),
+    spectrumRef: written.spectrumRef ? detached(written.spectrumRef) : null,
+    level: readLevel(written, window, groups),
     isolation: readIsolation(window),
     selectedMz: positive(ion.number(CV.selectedMz, CV.oldSelectedMz)),
     charge: charge === null || Math.round(charge) === 0 ? null : Math.abs(Math.round(charge)),
     intensity: ion.number(CV.peakIntensity),
-    activations: [...new Set(names)],
+    activations: readActivations(activation),
     ...readEnergy(activation)
   };
-}
-
-/** All precursor records of a spectrum in the order written. */
-export function readPrecursors(spectrum: XmlElement, groups: ParamGroups): PrecursorRecord[] {
-  const list = child(spectrum, 'precursorList');
-  return list ? children(list, 'precursor').map((element) => readPrecursor(element, groups)) : [];
 }
 
 /**

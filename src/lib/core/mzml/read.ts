@@ -63,7 +63,7 @@ class RunReader {
       throw new CoreError('xml', 'A spectrum comes before the head of the file', { byte: piece.byte, scan: null });
     try {
       const scan = readSpectrum(
-        { xml: piece.xml, binaries: piece.binaries, index: this.seen++ },
+        { content: piece.content, binaries: piece.binaries, index: this.seen++ },
         this.head,
         this.settings,
         this.warnings

@@ -8,9 +8,11 @@ import type { FileHead } from './head';
 import type { ReadSettings } from './options';
 import { Params } from './params';
 import { NO_PEAKS, pairPeaks, readArrays } from './peaks';
-import { mergeFilter, readPrecursors } from './precursor';
+import { detached } from './detached';
+import { mergeFilter, readPrecursor } from './precursor';
+import { recordOf, type ParamSet, type SpectrumRecord } from './record';
 import type { WarningCollector } from './warnings';
-import { attribute, child, parseXml, type XmlElement } from './xml';
+import { attribute, parseXml } from './xml';
 
 /** A spectrum that is no mass spectrum (absorption of light, for example): passed over. */
 export interface SkippedSpectrum {
@@ -21,7 +23,8 @@ export interface SkippedSpectrum {
 }
 
 export interface SpectrumInput {
-  xml: string;
+  /** the XML without the text of its `binary` elements, or the record already taken from it. */
+  content: string | SpectrumRecord;
   binaries: readonly Uint8Array[];
   /** position in the file, from 0. */
   index: number;
@@ -60,8 +63,8 @@ function readLevel(params: Params, filter: FilterString | null, precursors: Prec
 }
 
 /** The configuration's analyser, unless the filter string names the other one of a hybrid instrument. */
-function readAnalyser(scan: XmlElement | null, head: FileHead, filter: FilterString | null): AnalyserKind {
-  const reference = (scan && attribute(scan, 'instrumentConfigurationRef')) ?? head.defaultConfiguration ?? '';
+function readAnalyser(scan: SpectrumRecord['scan'], head: FileHead, filter: FilterString | null): AnalyserKind {
+  const reference = scan?.configurationRef ?? head.defaultConfiguration ?? '';
   const configured =
     head.configurations.get(reference)?.analyser ?? [...head.configurations.values()][0]?.analyser ?? 'unknown';
   const stated = filter?.analyser ?? null;
@@ -77,7 +80,7 @@ function readFilter(params: Params, scan: Params): (FilterString & { text: strin
     params.find(CV.filterString)?.value ??
     scan.user('filter string') ??
     params.user('filter string');
-  return text ? { text: text.slice(0, 2000), ...parseFilterString(text) } : null;
+  return text ? { text: detached(text.slice(0, 2000)), ...parseFilterString(text) } : null;
 }
 
 function isRadiation(params: Params): boolean {
@@ -134,35 +137,48 @@ export function readSpectrum(
   settings: ReadSettings,
   warnings: WarningCollector
 ): Scan | SkippedSpectrum {
-  const { element } = parseXml(input.xml);
-  const id = (attribute(element, 'id') ?? `index=${input.index}`).slice(0, LONGEST_ID);
+  const { content } = input;
+  const element = typeof content === 'string' ? parseXml(content).element : null;
+  const written = typeof content === 'string' ? element && attribute(element, 'id') : content.id;
+  const id = detached((written ?? `index=${input.index}`).slice(0, LONGEST_ID));
   try {
-    return buildScan(element, id, input, head, settings, warnings);
+    const record = typeof content === 'string' ? recordOf(element ?? {}) : content;
+    return buildScan(record, id, input, head, settings, warnings);
   } catch (error) {
     if (!(error instanceof CoreError)) throw error;
     throw new CoreError(error.code, error.message, { byte: error.place.byte, scan: id }, error.cure);
   }
 }
 
+const NO_PARAMS: ParamSet = { refs: [], own: [] };
+
 function buildScan(
-  element: XmlElement,
+  record: SpectrumRecord,
   id: string,
   input: SpectrumInput,
   head: FileHead,
   settings: ReadSettings,
   warnings: WarningCollector
 ): Scan | SkippedSpectrum {
-  const params = Params.of(element, head.groups);
-  const list = child(element, 'scanList');
-  const scanElement = list ? child(list, 'scan') : null;
-  const scanParams = Params.of(scanElement, head.groups);
+  const params = Params.of(record.params, head.groups);
+  const scanParams = Params.of(record.scan?.params ?? NO_PARAMS, head.groups);
   const filter = readFilter(params, scanParams);
-  const precursors = mergeFilter(readPrecursors(element, head.groups), filter);
+  const precursors = mergeFilter(
+    record.precursors.map((written) => readPrecursor(written, head.groups)),
+    filter
+  );
   const level = readLevel(params, filter, precursors);
   if (level === 0 || isRadiation(params)) return { skipped: true, id, level };
   if (level === null) warnings.add('stage-assumed', 'The spectrum states no stage; it was taken as MS1', id);
-  const arrays = readArrays(element, input.binaries, head.groups, settings);
-  const declared = Number(attribute(element, 'defaultArrayLength') ?? 0) || 0;
+  const arrays = readArrays(record, input.binaries, head.groups, settings);
+  if (arrays.wrongLength) {
+    warnings.add(
+      'encoded-length',
+      'The length that an array states for its text is not the length of that text; the text was read as it is',
+      id
+    );
+  }
+  const declared = Number(record.defaultArrayLength ?? 0) || 0;
   const raw = settings.peaks ? pairPeaks(arrays, id, declared, warnings) : NO_PEAKS;
   const top = highest(raw);
   const shape = shapePeaks(raw, shapeFlag(params, filter, head), settings, id, warnings);
@@ -179,7 +195,7 @@ function buildScan(
     basePeakIntensity: settings.peaks ? top.intensity : params.number(CV.basePeakIntensity),
     precursors,
     filterString: filter?.text ?? null,
-    analyser: readAnalyser(scanElement, head, filter),
+    analyser: readAnalyser(record.scan, head, filter),
     peakCount: settings.peaks ? shape.peaks.mz.length : declared,
     peaks: shape.peaks
   };
