@@ -25,7 +25,7 @@ const RULES: Readonly<Record<string, Rule>> = {
   components: {
     uses: ['core', 'review', 'schema', 'workers', 'state'],
     types: ['server/services'],
-    packages: ['svelte', '$app/', '@tanstack/', 'cytoscape', 'tus-js-client', '@sveltejs/kit']
+    packages: ['svelte', '$app/', '@tanstack/', '@fontsource/', 'cytoscape', 'tus-js-client', '@sveltejs/kit']
   },
   'server/config': { uses: [], packages: ['zod'] },
   'server/errors': { uses: [], packages: [] },

@@ -14,6 +14,7 @@ const PUBLIC: Readonly<Record<string, string>> = {
   'src/routes/(auth)/reset/+page.server.ts actions.default': 'whoever holds the secret of the mail may use it',
   'src/routes/(auth)/invitation/+page.server.ts load': 'whoever holds the secret of the mail may use it',
   'src/routes/(auth)/invitation/+page.server.ts actions.join': 'whoever holds the secret of the mail may use it',
+  'src/routes/shared/[token]/+page.server.ts load': 'whoever holds the secret of a share link may read what it opens',
   'src/routes/dev/mail/+page.server.ts load': 'exists only beside the local mail catcher, 404 elsewhere'
 };
 

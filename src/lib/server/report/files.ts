@@ -1,7 +1,7 @@
 import { reportCsv } from '$lib/review/report/csv';
 import { figureSvg } from '$lib/review/report/figure';
-import type { PrintedReport } from '../services/report';
 import { ServiceError } from '../errors';
+import type { PrintedReport } from './printed';
 import { renderPdf } from './pdf';
 import { reportDocument } from './pdf-document';
 

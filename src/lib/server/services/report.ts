@@ -1,20 +1,14 @@
 import { may } from '$lib/review/permissions';
 import type { RevisionContent } from '$lib/review/content';
-import { buildReport, type Report, type ReportSource } from '$lib/review/report/model';
+import { buildReport, type ReportSource } from '$lib/review/report/model';
 import type { ReportOptions } from '$lib/review/report/options';
 import { requireTree, type Actor } from '../auth/authorize';
 import { database } from '../db';
 import type { trees } from '../db/schema';
 import { ServiceError } from '../errors';
+import type { PrintedReport } from '../report/printed';
 import { revisionContent, sealed } from './revision-content';
 import { frozenContent, revisionsOf, type RevisionView } from './revisions';
-
-/** A report with the canonical text of the tree that it prints. */
-export interface PrintedReport {
-  report: Report;
-  /** canonical JSON; its SHA-256 is `report.source.hash`. */
-  json: string;
-}
 
 const noApproved = () =>
   new ServiceError(

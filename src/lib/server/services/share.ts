@@ -7,8 +7,9 @@ import { config } from '../config';
 import { database } from '../db';
 import { revisions, shareLinks, studies, trees, users } from '../db/schema';
 import { ServiceError } from '../errors';
+import type { PrintedReport } from '../report/printed';
 import { audit } from './audit';
-import { approvedReport, type PrintedReport } from './report';
+import { approvedReport } from './report';
 
 const DAY = 86_400_000;
 const idOf = (secret: string): string => createHash('sha256').update(secret).digest('hex');

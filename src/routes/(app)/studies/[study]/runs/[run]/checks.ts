@@ -62,7 +62,10 @@ function massAccuracy({ info, massError }: CheckInput): Check {
       words: `median ${ppmText(massError.median)} ppm over ${plural(massError.ions, 'confirmed ion')}`,
       good: null
     };
-  const accurate = info.analysers.some((analyser) => HIGH_RESOLUTION.has(analyser));
+  const stated = info.analysers.filter((analyser) => analyser !== 'unknown');
+  if (!stated.length)
+    return { name, words: 'the file states no analyser; trees are sought within 10 ppm or 2 mDa', good: null };
+  const accurate = stated.some((analyser) => HIGH_RESOLUTION.has(analyser));
   const words = accurate
     ? 'cannot be told from the file alone; it shows once ions of a tree are confirmed'
     : 'unit resolution: formulas cannot be told from the m/z alone';
