@@ -30,11 +30,13 @@ export function chargeText(charge: number, radical = false): string {
   return `${radical ? '•' : ''}${n > 1 ? n : ''}${charge < 0 ? '−' : '+'}`;
 }
 
-function signed(ppm: number | null): Cell {
-  if (ppm === null) return text('');
+/** Error with its sign and one decimal; never "−0.0". */
+export function signedPpm(ppm: number): string {
   const digits = ppm.toFixed(1);
-  return { kind: 'number', text: Number(digits) > 0 ? `+${digits}` : minus(digits) };
+  return Number(digits) > 0 ? `+${digits}` : minus(digits);
 }
+
+const signed = (ppm: number | null): Cell => (ppm === null ? text('') : { kind: 'number', text: signedPpm(ppm) });
 
 /** "MS3 195.0877 > 138.0662": stage with the isolated m/z. */
 export const pathText = (row: Pick<ReportRow, 'path'>, decimals: number): string =>

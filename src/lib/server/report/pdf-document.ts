@@ -1,6 +1,6 @@
 import type { Column, Content, ContentTable, TableCell, TDocumentDefinitions } from 'pdfmake/interfaces';
 import { CAUTION } from '$lib/review/report/caution';
-import { columnsOf } from '$lib/review/report/columns';
+import { columnsOf, signedPpm } from '$lib/review/report/columns';
 import { leftOutText, mzDecimals, type Report } from '$lib/review/report/model';
 import { INK } from '$lib/review/report/svg';
 import { cellContent, ionRuns, ionTypeRuns, formulaRuns, MONO, mzRuns, proseRuns, SANS } from './pdf-text';
@@ -23,7 +23,7 @@ function facts(report: Report): Content {
   const { tree } = report;
   const value = (text: Content | Content[]): Content => ({ text: Array.isArray(text) ? text : [text], fontSize: 10.5 });
   const mono = (text: string): Content => ({ text, font: MONO });
-  const error = tree.errorPpm === null ? '–' : `${tree.errorPpm.toFixed(1).replace('-', '−')} ppm`;
+  const error = tree.errorPpm === null ? '–' : `${signedPpm(tree.errorPpm)} ppm`;
   return {
     columns: [
       fact('precursor m/z found', value(mono(tree.precursorMz.toFixed(mzDecimals(report))))),
