@@ -7,4 +7,6 @@ export const POST: RequestHandler = (event) =>
   api(async () => replyTo(event.locals.user, event.params.remark, (await parseJson(event, replySchema)).body));
 
 export const PATCH: RequestHandler = (event) =>
-  api(async () => resolveThread(event.locals.user, event.params.remark, (await parseJson(event, resolveSchema)).resolved));
+  api(async () =>
+    resolveThread(event.locals.user, event.params.remark, (await parseJson(event, resolveSchema)).resolved)
+  );
