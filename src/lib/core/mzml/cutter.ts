@@ -1,8 +1,11 @@
 /** Cuts a stream of bytes into the head of the file and its spectra, without reading more than the tags. */
 import { CoreError } from '../errors';
 import { ByteWindow } from './byte-window';
+import { HeaderText } from './header-text';
 import type { ReadLimits, StreamingHash } from './options';
 import type { SpectrumRecord } from './record';
+import { QuickCut } from './quick-cut';
+import { quickRecord } from './quick-scan';
 import { named, nextMarkup, type Markup } from './tags';
 
 export interface HeadPiece {
@@ -55,6 +58,10 @@ const is = {
   checksum: named('fileChecksum')
 };
 
+/** Elements of the common form nest so deep below a spectrum. */
+const QUICK_DEPTH = 8;
+const COLON = 58;
+
 type State = 'root' | 'head' | 'body' | 'spectrum';
 
 export class Cutter {
@@ -69,6 +76,8 @@ export class Cutter {
   /** alternating: begin and end of each binary text, absolute. */
   private ranges: number[] = [];
   private openBinary = -1;
+  private quick: QuickCut | null = null;
+  private readonly header: HeaderText;
   private plainRoot = false;
   private checksumFrom = -1;
   private readonly result: CutEnd = {
@@ -83,9 +92,12 @@ export class Cutter {
 
   constructor(
     private readonly limits: ReadLimits,
-    hash: StreamingHash | null
+    hash: StreamingHash | null,
+    /** false: every spectrum goes through the XML parser. */
+    private readonly common = true
   ) {
     this.hash = hash;
+    this.header = new HeaderText(limits.spectrumXmlBytes);
   }
 
   /** Takes the next bytes of the stream; call `next` until it returns null before pushing again. */
@@ -102,6 +114,11 @@ export class Cutter {
    */
   next(): Piece | null {
     for (;;) {
+      if (this.quick) {
+        const piece = this.quickly(this.quick);
+        if (piece !== 'unusual') return piece;
+        this.quick = null;
+      }
       const { bytes, base } = this.window;
       const found = nextMarkup(bytes, this.scan - base);
       if (typeof found === 'number') {
@@ -182,6 +199,30 @@ export class Cutter {
     this.start = this.window.base + tag.start;
     this.ranges = [];
     this.openBinary = -1;
+    const prefixed = this.window.bytes[tag.nameFrom - 1] === COLON;
+    const plain = this.common && tag.kind === 'start' && !prefixed && this.depth + QUICK_DEPTH <= this.limits.depth;
+    this.quick = plain ? new QuickCut(this.window.base + tag.end) : null;
+  }
+
+  /** Cuts and scans a spectrum of the common form; null when more bytes are needed. */
+  private quickly(cut: QuickCut): SpectrumPiece | null | 'unusual' {
+    const result = cut.run(this.window);
+    if (result === 'unusual') return result;
+    if (result === 'more') {
+      this.checkSize();
+      return null;
+    }
+    const xml = this.header.read(this.window, this.start, cut, this.decoder.encoding);
+    const record = xml === null ? null : quickRecord(xml, cut.count);
+    if (record === null) return 'unusual';
+    const { start, window } = this;
+    const binaries: Uint8Array[] = [];
+    for (let i = 0; i < cut.ranges.length; i += 2) binaries.push(window.slice(cut.ranges[i], cut.ranges[i + 1]));
+    this.state = 'body';
+    this.quick = null;
+    this.depth--;
+    this.scan = cut.end;
+    return { kind: 'spectrum', byte: start, length: cut.end - start, content: record, binaries };
   }
 
   private inSpectrum(bytes: Uint8Array, tag: Markup): Piece | null {

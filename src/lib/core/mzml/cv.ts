@@ -128,3 +128,13 @@ export const UNSUPPORTED_COMPRESSIONS: ReadonlySet<string> = new Set([
   'MS:1003784',
   'MS:1003785'
 ]);
+
+const ALL = [
+  ...Object.values(CV),
+  ...[ACTIVATIONS, SOURCES, ANALYSERS, NUMBER_TYPES, COMPRESSIONS].flatMap((terms) => [...terms.keys()])
+];
+
+/** The accessions above that are of the form MS:nnnnnnn, by their number. */
+export const KNOWN_ACCESSIONS: ReadonlyMap<number, string> = new Map(
+  ALL.filter((term) => /^MS:\d{7}$/.test(term)).map((term) => [Number(term.slice(3)), term])
+);

@@ -53,6 +53,8 @@ export interface ReadOptions {
   centroid?: boolean;
   /** false: arrays are not decoded and peak lists are empty (metadata only); default true. */
   peaks?: boolean;
+  /** false: every spectrum goes through the XML parser, which is slow and gives the same; default true. */
+  quick?: boolean;
   /** called after every piece of input: bytes of the source taken so far, and scans read. */
   onProgress?: (bytes: number, scans: number) => void;
   /** asked after every piece of input; true ends the reading with a CoreError `cancelled`. */

@@ -192,7 +192,7 @@ export async function* readMzml(
 ): AsyncGenerator<MzmlEvent> {
   const settings = readSettings(options);
   const reader = new RunReader(settings);
-  const cutter = new Cutter(settings.limits, options.sha1?.() ?? null);
+  const cutter = new Cutter(settings.limits, options.sha1?.() ?? null, options.quick ?? true);
   let run: RunStart | null = null;
   let taken = 0;
   const counted = (bytes: number) => {
