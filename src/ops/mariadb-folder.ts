@@ -7,6 +7,7 @@ import {
   readFileSync,
   renameSync,
   rmSync,
+  symlinkSync,
   writeFileSync
 } from 'node:fs';
 import { tmpdir, userInfo } from 'node:os';
@@ -45,6 +46,9 @@ export function program(...names: string[]): string {
   );
 }
 
+/** A fresh folder with a short, plain path. */
+const shortFolder = () => mkdtempSync(join(/^[\w./-]{1,60}$/.test(tmpdir()) ? tmpdir() : '/tmp', 'rivenmark-'));
+
 /** Makes the folders that are missing and says where things are. */
 export function mariadbFolder(folder: string): MariadbFolder {
   const root = resolve(folder);
@@ -62,7 +66,7 @@ export function mariadbFolder(folder: string): MariadbFolder {
   }
   const near = join(root, 'm.sock');
   if (Buffer.byteLength(near) <= SOCKET_LIMIT) return { ...at, socket: near, socketFolder: null };
-  const socketFolder = mkdtempSync(join(tmpdir(), 'rivenmark-'));
+  const socketFolder = shortFolder();
   return { ...at, socket: join(socketFolder, 'm.sock'), socketFolder };
 }
 
@@ -101,8 +105,40 @@ export async function endLeftOver(at: MariadbFolder): Promise<void> {
   if (!existsSync(at.pidFile)) return;
   const pid = Number(readFileSync(at.pidFile, 'utf8').trim());
   const mark = `--datadir=${at.data} `;
-  if (Number.isInteger(pid) && pid > 1 && commandLine(pid)?.includes(mark)) await endForeign(pid, mark, 15_000);
+  const line = Number.isInteger(pid) && pid > 1 ? commandLine(pid) : null;
+  if (line?.includes(mark)) {
+    await endForeign(pid, mark, 15_000);
+    const socketFolder = /--socket=(\/\S*\/rivenmark-\w{6})\/m\.sock/.exec(line)?.[1];
+    if (socketFolder) rmSync(socketFolder, { recursive: true, force: true });
+  }
   rmSync(at.pidFile, { force: true });
+}
+
+/**
+ * Runs MariaDB's installer. It is a shell script that breaks at a blank in a path, so it sees the folder through a link.
+ * @returns what it said, or null when all went well
+ */
+function runInstaller(at: MariadbFolder, name: string): string | null {
+  const plain = shortFolder();
+  try {
+    const link = join(plain, 'to');
+    symlinkSync(at.root, link);
+    const args = [
+      '--no-defaults',
+      '--basedir=/usr',
+      `--datadir=${join(link, name)}`,
+      `--tmpdir=${join(link, 'tmp')}`,
+      ...asRoot(),
+      '--auth-root-authentication-method=socket',
+      `--auth-root-socket-user=${userInfo().username}`,
+      '--skip-test-db',
+      '--skip-name-resolve'
+    ];
+    const { status, error, stdout, stderr } = spawnSync(program('mariadb-install-db'), args, { encoding: 'utf8' });
+    return status === 0 ? null : (error?.message ?? `${stdout}${stderr}`);
+  } finally {
+    rmSync(plain, { recursive: true, force: true });
+  }
 }
 
 /** Installs the system tables where there are none. An interrupted earlier try is thrown away. */
@@ -110,25 +146,11 @@ export function installTables(at: MariadbFolder): void {
   if (existsSync(at.data)) return;
   const fresh = join(at.root, 'data.new');
   rmSync(fresh, { recursive: true, force: true });
-  const result = spawnSync(
-    program('mariadb-install-db'),
-    [
-      '--no-defaults',
-      '--basedir=/usr',
-      `--datadir=${fresh}`,
-      `--tmpdir=${at.tmp}`,
-      ...asRoot(),
-      '--auth-root-authentication-method=socket',
-      `--auth-root-socket-user=${userInfo().username}`,
-      '--skip-test-db',
-      '--skip-name-resolve'
-    ],
-    { encoding: 'utf8' }
-  );
-  if (result.status !== 0)
+  const trouble = runInstaller(at, 'data.new');
+  if (trouble !== null)
     throw new Error(
-      `MariaDB could not make its data folder ${at.data}. ${result.error?.message ?? ''}${result.stdout}${result.stderr}` +
-        '\nCheck free space and write permission there, then start again.'
+      `MariaDB could not make its data folder ${at.data}.\n${trouble}\n` +
+        'Check free space and write permission there, then start again.'
     );
   renameSync(fresh, at.data);
 }

@@ -127,7 +127,7 @@ function handle(child: ChildProcess, at: MariadbFolder, port: number, secret: st
   const stop = async () => {
     await endChild(child, STOP_WITHIN);
     rmSync(at.pidFile, { force: true });
-    if (at.socketFolder) rmSync(at.socketFolder, { recursive: true, force: true });
+    releaseSocket(at);
   };
   return {
     url: addressOf(port, secret, DATABASE),
@@ -143,20 +143,17 @@ function handle(child: ChildProcess, at: MariadbFolder, port: number, secret: st
   };
 }
 
-/**
- * Starts a MariaDB of our own: its own folder, socket, loopback port and generated password; no configuration file
- * and no system service take part. A server that a killed process left on the folder is ended first.
- * @throws Error saying what to do: not installed, folder not usable, port taken, or the end of the server's log
- */
-export async function startMariadb({ folder, port, quick = false }: MariadbOptions): Promise<Mariadb> {
-  const at = mariadbFolder(folder);
-  await endLeftOver(at);
-  installTables(at);
+const releaseSocket = ({ socketFolder }: MariadbFolder) => {
+  if (socketFolder) rmSync(socketFolder, { recursive: true, force: true });
+};
+
+/** Launches until the server is ready; tries another port where somebody else took the free one first. */
+async function launchReady(at: MariadbFolder, port: number | undefined, more: readonly string[]): Promise<Mariadb> {
   const secret = password(at);
   for (let attempt = 1; ; attempt++) {
     const chosen = port ?? (await freePort());
     writeInitFile(at, secret);
-    const child = launch(at, chosen, quick ? QUICK : []);
+    const child = launch(at, chosen, more);
     try {
       await untilReady(child, at, chosen, secret);
       return handle(child, at, chosen, secret);
@@ -166,5 +163,22 @@ export async function startMariadb({ folder, port, quick = false }: MariadbOptio
     } finally {
       rmSync(at.initFile, { force: true });
     }
+  }
+}
+
+/**
+ * Starts a MariaDB of our own: its own folder, socket, loopback port and generated password; no configuration file
+ * and no system service take part. A server that a killed process left on the folder is ended first.
+ * @throws Error saying what to do: not installed, folder not usable, port taken, or the end of the server's log
+ */
+export async function startMariadb({ folder, port, quick = false }: MariadbOptions): Promise<Mariadb> {
+  const at = mariadbFolder(folder);
+  try {
+    await endLeftOver(at);
+    installTables(at);
+    return await launchReady(at, port, quick ? QUICK : []);
+  } catch (error) {
+    releaseSocket(at);
+    throw error;
   }
 }

@@ -26,7 +26,11 @@ export function runQuietly(what, command, args, { env = process.env, cure }) {
   const seconds = () => `${Math.round((Date.now() - started) / 1000)} s`;
   say(`${what} …`);
   return new Promise((done, fail) => {
-    const child = spawn(command, args, { cwd: root, env, stdio: ['ignore', 'pipe', 'pipe'] });
+    const child = spawn(command, args, {
+      cwd: root,
+      env: { ...env, NO_COLOR: '1', FORCE_COLOR: '0' },
+      stdio: ['ignore', 'pipe', 'pipe']
+    });
     /** @type {string[]} */
     let lines = [];
     /** @param {Buffer} chunk */
