@@ -95,6 +95,32 @@ export function graphOf(items: readonly IonItem[]): IonGraphModel {
   return { nodes: sorted, edges: edges.filter((edge) => edge.primary || edge.measured) };
 }
 
+/**
+ * The ions that the argument rests on: those that were isolated, disputed or selected, then the strongest, each with
+ * the chain of formulas that it hangs on. A graph of all is for zooming; one of these is read at a glance.
+ * @param most formulas to choose before their chains are added
+ */
+export function mainIons(items: readonly IonItem[], most: number, selected: number | null): IonItem[] {
+  const held = items.filter((ion) => ion.formula && ion.state !== 'rejected' && ion.state !== 'open');
+  const rank = (ion: IonItem) =>
+    (ion.id === selected ? 4000 : 0) +
+    (ion.isPrecursor ? 2000 : 0) +
+    (ion.mark === 'disputed' ? 1000 : 0) +
+    ion.relative;
+  const chosen = new Set<string>();
+  for (const ion of [...held].sort((a, b) => rank(b) - rank(a) || b.mz - a.mz)) {
+    if (chosen.size >= most) break;
+    chosen.add(keyOf(ion.formula!, ion.charge));
+  }
+  for (let before = 0; before !== chosen.size;) {
+    before = chosen.size;
+    for (const ion of held)
+      if (ion.fromFormula && chosen.has(keyOf(ion.formula!, ion.charge)))
+        chosen.add(keyOf(ion.fromFormula, ion.charge));
+  }
+  return held.filter((ion) => chosen.has(keyOf(ion.formula!, ion.charge)));
+}
+
 /** A node with those placed under it, for the list form of the graph. */
 export interface GraphBranch {
   node: GraphNode;

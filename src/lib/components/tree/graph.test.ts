@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import type { IonItem } from '$lib/state/ion-rows';
 import { directionOf, layOut, STEPS } from './graph-layout';
-import { branchesOf, graphOf } from './graph-model';
+import { branchesOf, graphOf, mainIons } from './graph-model';
 
 let nextId = 1;
 const ion = (
@@ -20,6 +20,21 @@ const top = ion('C19H25N2O5', 361.18, null);
 const middle = ion('C17H21N2O3', 301.15, ['C19H25N2O5', 361.18, 'C2H4O2']);
 const low = ion('C12H14NO2', 204.1, ['C17H21N2O3', 301.15, 'C5H7NO'], { spectrum: 1 });
 const lowAbove = ion('C12H14NO2', 204.1, ['C19H25N2O5', 361.18, 'C7H11NO3'], { relative: 90 });
+
+describe('mainIons', () => {
+  const weak = ion('C5H8N', 82.07, ['C12H14NO2', 204.1, 'C7H6O2'], { relative: 0.4 });
+  const formulas = (ions: IonItem[]) => [...new Set(ions.map((item) => item.formula))].sort();
+
+  it('keeps the isolated and the strongest with the chain that they hang on', () => {
+    expect(formulas(mainIons([top, middle, low, weak], 2, null))).toEqual(
+      ['C12H14NO2', 'C17H21N2O3', 'C19H25N2O5'].sort()
+    );
+  });
+  it('keeps the selected ion however weak, and nothing rejected', () => {
+    expect(formulas(mainIons([top, middle, low, weak], 1, weak.id))).toContain('C5H8N');
+    expect(mainIons([{ ...low, state: 'rejected' }], 5, null)).toEqual([]);
+  });
+});
 
 describe('graphOf', () => {
   it('joins the ions of one formula to one node, told by its strongest ion', () => {
