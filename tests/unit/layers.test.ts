@@ -44,7 +44,10 @@ const RULES: Readonly<Record<string, Rule>> = {
   'server/jobs': { uses: [...SERVER_BASE, ...ALL_LOWER, 'server/services'], packages: 'any' },
   'server/demo': { uses: [...SERVER_BASE, ...ALL_LOWER, 'server/services', 'server/jobs'], packages: 'any' },
   cli: { uses: ['core', 'schema'], packages: ['node:', 'tsx'] },
-  ops: { uses: ['server/db', 'server/demo', 'server/config', 'server/storage'], packages: 'any' },
+  ops: {
+    uses: ['schema', 'server/db', 'server/demo', 'server/services', 'server/config', 'server/storage'],
+    packages: 'any'
+  },
   routes: {
     uses: [
       ...['core', 'review', 'schema', 'state', 'components', 'workers'],
