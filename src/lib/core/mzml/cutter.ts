@@ -1,11 +1,9 @@
 /** Cuts a stream of bytes into the head of the file and its spectra, without reading more than the tags. */
 import { CoreError } from '../errors';
 import { ByteWindow } from './byte-window';
-import { HeaderText } from './header-text';
 import type { ReadLimits, StreamingHash } from './options';
 import type { SpectrumRecord } from './record';
-import { QuickCut } from './quick-cut';
-import { quickRecord } from './quick-scan';
+import { QuickCutter } from './quick-cut';
 import { named, nextMarkup, type Markup } from './tags';
 
 export interface HeadPiece {
@@ -76,8 +74,10 @@ export class Cutter {
   /** alternating: begin and end of each binary text, absolute. */
   private ranges: number[] = [];
   private openBinary = -1;
-  private quick: QuickCut | null = null;
-  private readonly header: HeaderText;
+  private readonly quick = new QuickCutter();
+  /** the present spectrum may be of the common form. */
+  private isQuick = false;
+  private ended = false;
   private plainRoot = false;
   private checksumFrom = -1;
   private readonly result: CutEnd = {
@@ -97,7 +97,6 @@ export class Cutter {
     private readonly common = true
   ) {
     this.hash = hash;
-    this.header = new HeaderText(limits.spectrumXmlBytes);
   }
 
   /** Takes the next bytes of the stream; call `next` until it returns null before pushing again. */
@@ -106,6 +105,12 @@ export class Cutter {
     const begun = this.state === 'body' ? this.scan : this.start;
     const keep = this.checksumFrom < 0 ? begun : Math.min(begun, this.checksumFrom);
     this.window.push(piece, Math.min(this.scan, keep));
+    this.quick.moved();
+  }
+
+  /** Call when no more bytes come, then `next` until it returns null, then `finish`. */
+  end(): void {
+    this.ended = true;
   }
 
   /**
@@ -114,10 +119,9 @@ export class Cutter {
    */
   next(): Piece | null {
     for (;;) {
-      if (this.quick) {
-        const piece = this.quickly(this.quick);
+      if (this.isQuick) {
+        const piece = this.quickly();
         if (piece !== 'unusual') return piece;
-        this.quick = null;
       }
       const { bytes, base } = this.window;
       const found = nextMarkup(bytes, this.scan - base);
@@ -133,7 +137,7 @@ export class Cutter {
     }
   }
 
-  /** Call once after the last `push`. */
+  /** Call once at the very end. */
   finish(): CutEnd {
     if (this.state === 'root') throw this.notMzml();
     if (this.state === 'spectrum') this.result.openSpectrum = this.start;
@@ -200,29 +204,22 @@ export class Cutter {
     this.ranges = [];
     this.openBinary = -1;
     const prefixed = this.window.bytes[tag.nameFrom - 1] === COLON;
-    const plain = this.common && tag.kind === 'start' && !prefixed && this.depth + QUICK_DEPTH <= this.limits.depth;
-    this.quick = plain ? new QuickCut(this.window.base + tag.end) : null;
+    this.isQuick = this.common && tag.kind === 'start' && !prefixed && this.depth + QUICK_DEPTH <= this.limits.depth;
+    this.quick.begin();
   }
 
-  /** Cuts and scans a spectrum of the common form; null when more bytes are needed. */
-  private quickly(cut: QuickCut): SpectrumPiece | null | 'unusual' {
-    const result = cut.run(this.window);
-    if (result === 'unusual') return result;
-    if (result === 'more') {
-      this.checkSize();
-      return null;
-    }
-    const xml = this.header.read(this.window, this.start, cut, this.decoder.encoding);
-    const record = xml === null ? null : quickRecord(xml, cut.count);
-    if (record === null) return 'unusual';
+  /** Cuts a spectrum of the common form; null when more bytes are needed. */
+  private quickly(): SpectrumPiece | null | 'unusual' {
     const { start, window } = this;
-    const binaries: Uint8Array[] = [];
-    for (let i = 0; i < cut.ranges.length; i += 2) binaries.push(window.slice(cut.ranges[i], cut.ranges[i + 1]));
+    const cut = this.quick.cut(window, start, this.ended);
+    if (cut === 'more') this.checkSize();
+    if (cut === 'more') return null;
+    this.isQuick = false;
+    if (cut === 'unusual') return cut;
     this.state = 'body';
-    this.quick = null;
     this.depth--;
     this.scan = cut.end;
-    return { kind: 'spectrum', byte: start, length: cut.end - start, content: record, binaries };
+    return { kind: 'spectrum', byte: start, length: cut.end - start, content: cut.record, binaries: cut.binaries };
   }
 
   private inSpectrum(bytes: Uint8Array, tag: Markup): Piece | null {

@@ -134,7 +134,5 @@ const ALL = [
   ...[ACTIVATIONS, SOURCES, ANALYSERS, NUMBER_TYPES, COMPRESSIONS].flatMap((terms) => [...terms.keys()])
 ];
 
-/** The accessions above that are of the form MS:nnnnnnn, by their number. */
-export const KNOWN_ACCESSIONS: ReadonlyMap<number, string> = new Map(
-  ALL.filter((term) => /^MS:\d{7}$/.test(term)).map((term) => [Number(term.slice(3)), term])
-);
+/** The accessions above, each by itself: one text for all its occurrences. */
+export const KNOWN_ACCESSIONS: ReadonlyMap<string, string> = new Map(ALL.map((term) => [term, term]));

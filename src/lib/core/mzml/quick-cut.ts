@@ -1,83 +1,73 @@
-/** Finds the end of a spectrum and its base64 texts by looking at nothing but the `<` and the names behind them. */
+/** Cuts and scans the spectra of the common form. */
 import type { ByteWindow } from './byte-window';
-import { startsWith } from './tags';
+import { quickRecord } from './quick-scan';
+import type { SpectrumRecord } from './record';
+import { WindowText } from './window-text';
 
-const LT = 60;
-const SLASH = 47;
-const COLON = 58;
-const ascii = (text: string): Uint8Array => Uint8Array.from(text, (letter) => letter.charCodeAt(0));
-const END = ascii('</spectrum>');
-const LIST_END = ascii('</spectrum');
-const RUN_END = ascii('</run');
-const SPECTRUM = ascii('<spectrum');
-const BINARY = ascii('<binary>');
-const BINARY_END = ascii('</binary>');
+const END = '</spectrum>';
+const BINARY = '<binary>';
+const BINARY_END = '</binary>';
+/** Larger spectra are cut by their markup, which never looks at a byte twice; their XML is a small part of them. */
+const LARGEST = 2 << 20;
 
-/** 'more': more bytes are needed; 'unusual': cut it by its markup instead. */
-export type QuickCutResult = 'done' | 'more' | 'unusual';
-
-function isLetter(byte: number): boolean {
-  return (byte | 32) >= 97 && (byte | 32) <= 122;
+export interface QuickSpectrum {
+  record: SpectrumRecord;
+  binaries: Uint8Array[];
+  /** absolute: behind the spectrum. */
+  end: number;
 }
 
-export class QuickCut {
-  /** absolute: behind the spectrum, once done. */
-  end = 0;
-  /** number of `<` outside the base64 texts. */
-  count = 1;
-  /** begin and end of each base64 text, absolute, alternating. */
-  readonly ranges: number[] = [];
-  private inBinary = false;
+export class QuickCutter {
+  private readonly view = new WindowText();
+  /** the number of bytes from which it makes sense to look for the end of the present spectrum once more. */
+  private enough = 0;
 
-  /** @param at absolute offset behind the start tag of the spectrum */
-  constructor(private at: number) {}
+  /** Call at the beginning of each spectrum. */
+  begin(): void {
+    this.enough = 0;
+  }
 
-  /** Goes on from where it stopped. */
-  run({ bytes, base }: ByteWindow): QuickCutResult {
-    let i = this.at - base;
-    for (;;) {
-      if (this.inBinary) i = bytes.indexOf(LT, i);
-      else while (i < bytes.length && bytes[i] !== LT) i++;
-      if (i < 0 || i >= bytes.length) {
-        this.at = base + bytes.length;
-        return 'more';
-      }
-      const next = this.inBinary ? this.endBinary(bytes, base, i) : this.tag(bytes, base, i);
-      if (typeof next === 'string') return next;
-      i = next;
+  /** Call when the window gets more bytes. */
+  moved(): void {
+    this.view.clear();
+  }
+
+  /**
+   * Cuts the spectrum that begins at `start` (absolute).
+   * @param last no more bytes will come
+   */
+  cut(window: ByteWindow, start: number, last: boolean): QuickSpectrum | 'more' | 'unusual' {
+    const held = window.end - start;
+    if (held < this.enough && !last) return 'more';
+    const { view } = this;
+    view.cover(window, start);
+    const at = start - view.from;
+    const end = view.text.indexOf(END, at);
+    if (end < 0) {
+      this.enough = held * 1.5;
+      return last || held > LARGEST ? 'unusual' : 'more';
     }
-  }
-
-  private endBinary(bytes: Uint8Array, base: number, i: number): number | 'unusual' {
-    if (!startsWith(bytes, BINARY_END, i)) return 'unusual';
-    this.ranges.push(base + i);
-    this.inBinary = false;
-    this.count++;
-    return i + BINARY_END.length;
-  }
-
-  private tag(bytes: Uint8Array, base: number, i: number): number | 'done' | 'unusual' {
-    this.count++;
-    const closing = bytes[i + 1] === SLASH;
-    if (closing) {
-      if (startsWith(bytes, END, i)) {
-        this.end = base + i + END.length;
-        return 'done';
-      }
-      if (startsWith(bytes, LIST_END, i) || startsWith(bytes, RUN_END, i)) return 'unusual';
-      if (startsWith(bytes, BINARY_END, i)) return 'unusual';
-    } else if (startsWith(bytes, BINARY, i)) {
-      this.inBinary = true;
-      this.ranges.push(base + i + BINARY.length);
-      return i + BINARY.length;
-    } else if (startsWith(bytes, SPECTRUM, i)) return 'unusual';
-    return passName(bytes, i + (closing ? 2 : 1));
+    const ranges = findBinaries(view.text, at, end);
+    const record = ranges && quickRecord(view.text, at, ranges);
+    if (!record) return 'unusual';
+    const binaries: Uint8Array[] = [];
+    for (let i = 0; i < ranges.length; i += 2) {
+      binaries.push(window.slice(view.from + ranges[i], view.from + ranges[i + 1]));
+    }
+    return { record, binaries, end: view.from + end + END.length };
   }
 }
 
-/** Index behind a name. One with a prefix, one that the bytes at hand cut off, and no name at all are unusual. */
-function passName(bytes: Uint8Array, from: number): number | 'unusual' {
-  let k = from;
-  while (k < bytes.length && isLetter(bytes[k])) k++;
-  return k === from || k === bytes.length || bytes[k] === COLON ? 'unusual' : k;
+/** Begin and end of each base64 text as indexes into `text`, alternating; null when one is not plainly there. */
+function findBinaries(text: string, from: number, to: number): number[] | null {
+  const ranges: number[] = [];
+  let at = text.indexOf(BINARY, from);
+  while (at >= 0 && at < to) {
+    const begin = at + BINARY.length;
+    const end = text.indexOf('<', begin);
+    if (!text.startsWith(BINARY_END, end)) return null;
+    ranges.push(begin, end);
+    at = text.indexOf(BINARY, end);
+  }
+  return ranges;
 }

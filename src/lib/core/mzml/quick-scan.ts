@@ -1,172 +1,185 @@
 /**
  * Takes the record of a spectrum straight from its XML where that has the common form: known elements and attributes
- * in the order of the schema, double quotes, no comments. Anything else is left to the XML parser, whose answer this
+ * in the order of the schema, plainly written, no comments. Anything else is left to the XML parser, whose answer this
  * one must equal; a form is taken here only when it cannot be read in two ways.
  */
 import { CoreError } from '../errors';
+import { matchCvParam, matchTag, matchUserParam, type Tag } from './plain-tag';
 import type { ArrayText, ParamSet, PrecursorText, SpectrumRecord } from './record';
-import { TagReader } from './tag-reader';
 
 const emptySet = (): ParamSet => ({ refs: [], own: [] });
 
+/** Where an element may stand, and a bit for those that may come once; 0 for those that may come again. */
+const PLACES: ReadonlyMap<string, { parents: readonly string[]; once: number }> = new Map([
+  ['scanList', { parents: ['spectrum'], once: 1 }],
+  ['precursorList', { parents: ['spectrum'], once: 2 }],
+  ['productList', { parents: ['spectrum'], once: 4 }],
+  ['binaryDataArrayList', { parents: ['spectrum'], once: 8 }],
+  ['scan', { parents: ['scanList'], once: 0 }],
+  ['scanWindowList', { parents: ['scan'], once: 1 }],
+  ['scanWindow', { parents: ['scanWindowList'], once: 0 }],
+  ['precursor', { parents: ['precursorList'], once: 0 }],
+  ['product', { parents: ['productList'], once: 0 }],
+  ['isolationWindow', { parents: ['precursor', 'product'], once: 1 }],
+  ['selectedIonList', { parents: ['precursor'], once: 2 }],
+  ['activation', { parents: ['precursor'], once: 4 }],
+  ['selectedIon', { parents: ['selectedIonList'], once: 0 }],
+  ['binaryDataArray', { parents: ['binaryDataArrayList'], once: 0 }],
+  ['binary', { parents: ['binaryDataArray'], once: 1 }]
+]);
+
+interface Frame {
+  name: string;
+  /** null: nobody asks for the parameters in here. */
+  set: ParamSet | null;
+  /** bits of the children met. */
+  met: number;
+}
+
+/** Length of a plain `<binary>`, the only form that the cutter knows. */
+const BINARY_TAG = 8;
+const C = 99;
+const U = 117;
+
 class QuickScanner {
-  private readonly tags: TagReader;
+  readonly record: SpectrumRecord;
+  private readonly frames: Frame[];
+  private top: Frame;
+  private precursor: PrecursorText | null = null;
+  private array: ArrayText | null = null;
+  private ionTaken = false;
+  private nextBinary = 0;
 
-  constructor(text: string) {
-    this.tags = new TagReader(text);
-  }
-
-  /** The record, or null when the form is not common or the text does not hold exactly `count` tags. */
-  spectrum(count: number): SpectrumRecord | null {
-    const { tags } = this;
-    if (tags.next() !== 'start' || tags.name !== 'spectrum' || !tags.readAttributes() || tags.empty) return null;
-    const record: SpectrumRecord = {
-      id: tags.attribute('id'),
-      defaultArrayLength: tags.attribute('defaultArrayLength'),
+  /** @param binaries begin and end of each base64 text, alternating, as indexes into `text` */
+  constructor(
+    private readonly text: string,
+    spectrum: Tag,
+    private readonly binaries: readonly number[]
+  ) {
+    this.record = {
+      id: spectrum.attributes.get('id') ?? null,
+      defaultArrayLength: spectrum.attributes.get('defaultArrayLength') ?? null,
       params: emptySet(),
       scan: null,
       precursors: [],
       arrays: []
     };
-    const read = this.content('spectrum', record.params, (name) => this.spectrumChild(name, record));
-    return read && tags.atEnd() && tags.count === count ? record : null;
+    this.top = { name: 'spectrum', set: this.record.params, met: 0 };
+    this.frames = [];
   }
 
-  /**
-   * Reads what an element holds, its end tag included. Each child element but those in `many` may come once.
-   * @param child reads the child whose start tag was just met with its attributes
-   */
-  private content(name: string, set: ParamSet | null, child: (name: string) => boolean, many = ''): boolean {
-    const { tags } = this;
-    let met = '';
+  /** Reads up to the end tag of the spectrum. True when all of it was common. */
+  run(from: number): boolean {
+    const { text } = this;
+    let at = from;
     for (;;) {
-      const kind = tags.next();
-      if (kind !== 'start') return kind === 'end' && tags.name === name;
-      const inner = tags.name;
-      if (inner === 'cvParam') {
-        if (!this.param(set, true)) return false;
-      } else if (inner === 'userParam') {
-        if (!this.param(set, false)) return false;
+      const letter = text.charCodeAt(at + 1);
+      if (letter === C || letter === U) {
+        const found = letter === C ? matchCvParam(text, at) : matchUserParam(text, at);
+        if (!found || !this.add(found.param)) return false;
+        at = found.end;
+        continue;
+      }
+      const tag = matchTag(text, at);
+      if (!tag) return false;
+      if (tag.kind !== 'end') {
+        if (!this.open(tag)) return false;
+        if (tag.name !== 'binary') at = tag.end;
+        else if (this.binaries[this.nextBinary] === at + BINARY_TAG) at = this.binaries[this.nextBinary + 1];
+        else return false;
+        if (tag.name === 'binary') this.nextBinary += 2;
       } else {
-        if (!tags.readAttributes()) return false;
-        if (inner === 'referenceableParamGroupRef') {
-          if (!tags.empty) return false;
-          set?.refs.push(tags.attribute('ref') ?? '');
-        } else {
-          if (inner !== many && met.includes(`<${inner}>`)) return false;
-          met += inner === many ? '' : `<${inner}>`;
-          if (!child(inner)) return false;
-        }
+        at = tag.end;
+        if (tag.name !== this.top.name) return false;
+        const outer = this.frames.pop();
+        if (!outer) return this.nextBinary === this.binaries.length;
+        this.top = outer;
       }
     }
   }
 
   /** A record has its cvParams first; where the file has not, this is no common form. */
-  private param(set: ParamSet | null, controlled: boolean): boolean {
-    const param = this.tags.param(controlled);
-    if (param === null) return false;
-    if (set === null) return true;
-    if (controlled && set.own.length > 0 && set.own[set.own.length - 1].accession === null) return false;
-    if (controlled && param.accession === null) return false;
-    set.own.push(param);
+  private add(param: ParamSet['own'][number]): boolean {
+    const own = this.top.set?.own;
+    if (!own) return true;
+    if (param.accession !== null && own.length > 0 && own[own.length - 1].accession === null) return false;
+    own.push(param);
     return true;
   }
 
-  /** An element that holds nothing but parameters. */
-  private leaf(name: string, set: ParamSet | null): boolean {
-    return this.tags.empty || this.content(name, set, () => false);
-  }
-
-  private spectrumChild(name: string, record: SpectrumRecord): boolean {
-    const { tags } = this;
-    if (name === 'scanList') return tags.empty || this.content(name, null, () => this.scan(record), 'scan');
-    if (name === 'precursorList') {
-      return tags.empty || this.content(name, null, () => this.precursor(record), 'precursor');
+  private open(tag: Tag): boolean {
+    const { name } = tag;
+    if (name === 'referenceableParamGroupRef') {
+      this.top.set?.refs.push(tag.attributes.get('ref') ?? '');
+      return tag.kind === 'empty';
     }
-    if (name === 'productList') return tags.empty || this.content(name, null, () => this.product(), 'product');
-    if (name !== 'binaryDataArrayList') return false;
-    return tags.empty || this.content(name, null, () => this.array(record), 'binaryDataArray');
+    const place = PLACES.get(name);
+    if (!place || !place.parents.includes(this.top.name) || (this.top.met & place.once) !== 0) return false;
+    this.top.met |= place.once;
+    const inside = this.top.name;
+    const set = this.begin(name, inside, tag.attributes);
+    if (tag.kind === 'start') {
+      this.frames.push(this.top);
+      this.top = { name, set, met: 0 };
+    }
+    return true;
   }
 
-  private scan(record: SpectrumRecord): boolean {
-    const { tags } = this;
-    if (tags.name !== 'scan') return false;
-    const configurationRef = tags.attribute('instrumentConfigurationRef');
+  private begin(name: string, inside: string, attributes: Tag['attributes']): ParamSet | null {
+    if (name === 'scan') return this.beginScan(attributes.get('instrumentConfigurationRef') ?? null);
+    if (name === 'precursor') return this.beginPrecursor(attributes.get('spectrumRef') ?? null);
+    if (name === 'binaryDataArray') return this.beginArray(attributes);
+    if (name === 'isolationWindow') return inside === 'precursor' ? (this.precursor?.window ?? null) : null;
+    if (name === 'activation') return this.precursor?.activation ?? null;
+    if (name === 'selectedIon') {
+      const first = !this.ionTaken;
+      this.ionTaken = true;
+      return first ? (this.precursor?.ion ?? null) : null;
+    }
+    if (name === 'binary' && this.array) this.array.hasBinary = true;
+    return null;
+  }
+
+  private beginScan(configurationRef: string | null): ParamSet | null {
+    if (this.record.scan) return null;
     const params = emptySet();
-    record.scan ??= { configurationRef, params };
-    return tags.empty || this.content('scan', params, () => this.scanWindows());
+    this.record.scan = { configurationRef, params };
+    return params;
   }
 
-  private scanWindows(): boolean {
-    const { tags } = this;
-    if (tags.name !== 'scanWindowList') return false;
-    const window = () => tags.name === 'scanWindow' && this.leaf('scanWindow', null);
-    return tags.empty || this.content('scanWindowList', null, window, 'scanWindow');
+  private beginPrecursor(spectrumRef: string | null): ParamSet {
+    const params = emptySet();
+    this.precursor = { spectrumRef, params, window: emptySet(), ion: emptySet(), activation: emptySet() };
+    this.record.precursors.push(this.precursor);
+    this.ionTaken = false;
+    return params;
   }
 
-  private product(): boolean {
-    const { tags } = this;
-    if (tags.name !== 'product') return false;
-    const window = () => tags.name === 'isolationWindow' && this.leaf('isolationWindow', null);
-    return tags.empty || this.content('product', null, window);
-  }
-
-  private precursor(record: SpectrumRecord): boolean {
-    const { tags } = this;
-    if (tags.name !== 'precursor') return false;
-    const precursor: PrecursorText = {
-      spectrumRef: tags.attribute('spectrumRef'),
-      params: emptySet(),
-      window: emptySet(),
-      ion: emptySet(),
-      activation: emptySet()
-    };
-    record.precursors.push(precursor);
-    return tags.empty || this.content('precursor', precursor.params, (name) => this.precursorChild(name, precursor));
-  }
-
-  private precursorChild(name: string, precursor: PrecursorText): boolean {
-    const { tags } = this;
-    if (name === 'isolationWindow') return this.leaf(name, precursor.window);
-    if (name === 'activation') return this.leaf(name, precursor.activation);
-    if (name !== 'selectedIonList') return false;
-    let set: ParamSet | null = precursor.ion;
-    const ion = () => {
-      if (tags.name !== 'selectedIon') return false;
-      const own = set;
-      set = null;
-      return this.leaf('selectedIon', own);
-    };
-    return tags.empty || this.content(name, null, ion, 'selectedIon');
-  }
-
-  private array(record: SpectrumRecord): boolean {
-    const { tags } = this;
-    if (tags.name !== 'binaryDataArray') return false;
-    const array: ArrayText = {
-      arrayLength: tags.attribute('arrayLength'),
-      encodedLength: tags.attribute('encodedLength'),
+  private beginArray(attributes: Tag['attributes']): ParamSet {
+    const params = emptySet();
+    this.array = {
+      arrayLength: attributes.get('arrayLength') ?? null,
+      encodedLength: attributes.get('encodedLength') ?? null,
       hasBinary: false,
-      params: emptySet()
+      params
     };
-    record.arrays.push(array);
-    const binary = () => {
-      array.hasBinary = true;
-      return tags.name === 'binary' && this.leaf('binary', null);
-    };
-    return tags.empty || this.content('binaryDataArray', array.params, binary);
+    this.record.arrays.push(this.array);
+    return params;
   }
 }
 
 /**
  * The record of a spectrum of the common form.
- * @param xml the spectrum without the text of its `binary` elements
- * @param count number of `<` in it: any that is not the beginning of a tag makes the form unusual
+ * @param text holds the spectrum from `start` to the end of its end tag
+ * @param binaries begin and end of each base64 text in it, alternating
  * @returns null for every other form, those with an error among them
  */
-export function quickRecord(xml: string, count: number): SpectrumRecord | null {
+export function quickRecord(text: string, start: number, binaries: readonly number[]): SpectrumRecord | null {
   try {
-    return new QuickScanner(xml).spectrum(count);
+    const spectrum = matchTag(text, start);
+    if (spectrum?.kind !== 'start' || spectrum.name !== 'spectrum') return null;
+    const scanner = new QuickScanner(text, spectrum, binaries);
+    return scanner.run(spectrum.end) ? scanner.record : null;
   } catch (error) {
     // An undefined entity: the XML parser's way reports it.
     if (error instanceof CoreError) return null;

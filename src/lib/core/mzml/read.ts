@@ -31,6 +31,7 @@ export type MzmlEvent =
 class RunReader {
   readonly warnings = new WarningCollector();
   private head: FileHead | null = null;
+  private run: RunStart | null = null;
   private readonly levels: Record<string, number> = {};
   private readonly analysers = new Set<AnalyserKind>();
   private polarity: RunInfo['polarity'] = null;
@@ -48,13 +49,14 @@ class RunReader {
       this.warnings.add('old-version', `The file says mzML ${head.version.slice(0, 20)}; it was read as 1.1`);
     }
     const used = head.configurations.get(head.defaultConfiguration ?? '') ?? [...head.configurations.values()][0];
-    return {
+    this.run = {
       version: head.version,
       ionSource: used?.source ?? 'unknown',
       analysers: [...new Set([...head.configurations.values()].map((item) => item.analyser))],
       instrument: used?.model ?? null,
       startTime: head.startTime
     };
+    return this.run;
   }
 
   /** Reads one spectrum; null when it was passed over or could not be used. */
@@ -107,7 +109,8 @@ class RunReader {
     if (scan.centroidedHere) this.warnings.add('centroided', 'Profile spectra were centroided here', scan.id);
   }
 
-  finish(end: CutEnd, run: RunStart | null): RunSummary {
+  finish(end: CutEnd): RunSummary {
+    const { run } = this;
     if (!run) throw endsEarly(end);
     if (this.scanCount === 0) throw this.nothingRead(end);
     if (!end.closed) this.warnTruncated(end);
@@ -193,7 +196,6 @@ export async function* readMzml(
   const settings = readSettings(options);
   const reader = new RunReader(settings);
   const cutter = new Cutter(settings.limits, options.sha1?.() ?? null, options.quick ?? true);
-  let run: RunStart | null = null;
   let taken = 0;
   const counted = (bytes: number) => {
     taken += bytes;
@@ -201,21 +203,26 @@ export async function* readMzml(
   for await (const bytes of uncompressed(source, options, settings.limits, counted)) {
     if (options.isCancelled?.()) throw cancelled();
     cutter.push(bytes);
-    for (let piece = cutter.next(); piece; piece = cutter.next()) {
-      if (piece.kind === 'head') {
-        run = reader.start(piece.xml);
-        yield { kind: 'run', run };
-      } else if (piece.kind === 'broken') {
-        reader.fail(new CoreError('xml', 'A spectrum has no end', { byte: piece.byte, scan: null }));
-      } else {
-        const scan = reader.scan(piece);
-        if (scan) yield { kind: 'scan', scan, byte: piece.byte, length: piece.length };
-      }
-    }
+    yield* piecesRead(cutter, reader);
     options.onProgress?.(taken, reader.scanCount);
   }
-  const summary = reader.finish(cutter.finish(), run);
-  yield { kind: 'end', summary };
+  cutter.end();
+  yield* piecesRead(cutter, reader);
+  yield { kind: 'end', summary: reader.finish(cutter.finish()) };
+}
+
+/** Reads what can be cut from the bytes at hand. */
+function* piecesRead(cutter: Cutter, reader: RunReader): Generator<MzmlEvent> {
+  for (let piece = cutter.next(); piece; piece = cutter.next()) {
+    if (piece.kind === 'head') {
+      yield { kind: 'run', run: reader.start(piece.xml) };
+    } else if (piece.kind === 'broken') {
+      reader.fail(new CoreError('xml', 'A spectrum has no end', { byte: piece.byte, scan: null }));
+    } else {
+      const scan = reader.scan(piece);
+      if (scan) yield { kind: 'scan', scan, byte: piece.byte, length: piece.length };
+    }
+  }
 }
 
 /** Reads a whole file into memory; for files of moderate size. Errors as for `readMzml`. */
