@@ -1,5 +1,6 @@
 import { createHash, randomBytes } from 'node:crypto';
 import { and, desc, eq, isNull, sql } from 'drizzle-orm';
+import { may } from '$lib/review/permissions';
 import { reportOptions } from '$lib/review/report/options';
 import { shareTokenSchema, type ShareLinkView } from '$lib/schema/review';
 import { requireStudy, requireTree, type Actor } from '../auth/authorize';
@@ -61,6 +62,12 @@ export async function shareTree(actor: Actor | null, treeId: string, studyId: st
 
 const stateOf = (link: LinkRow): ShareLinkView['state'] =>
   link.revokedAt ? 'revoked' : link.expiresAt <= new Date() ? 'expired' : 'open';
+
+/** The links of a study for whoever may make them; null for everybody else who reads the study. @throws ServiceError */
+export async function studyShareLinks(actor: Actor | null, studyId: string): Promise<ShareLinkView[] | null> {
+  const { role } = await requireStudy(actor, studyId, 'study.read');
+  return may(role, 'study.share') ? listShareLinks(actor, studyId) : null;
+}
 
 /** Links of a study, or of one of its trees together with those of the whole study; newest first. @throws ServiceError forbidden */
 export async function listShareLinks(actor: Actor | null, studyId: string, treeId?: string): Promise<ShareLinkView[]> {
