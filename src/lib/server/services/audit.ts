@@ -1,11 +1,11 @@
+import type { AuditAction } from '$lib/schema/audit';
 import type { Actor } from '../auth/authorize';
 import type { Executor } from '../db/connection';
 import { auditLog } from '../db/schema';
 
 export interface AuditEntry {
   groupId: string | null;
-  /** 'subject.past-tense', e.g. 'claim.confirmed' */
-  action: string;
+  action: AuditAction;
   subjectKind: 'group' | 'study' | 'run' | 'tree' | 'ion' | 'remark' | 'revision' | 'user' | 'share-link';
   subjectId: string;
   details?: Record<string, unknown>;

@@ -117,7 +117,12 @@ export async function changeMember(actor: Actor | null, groupId: string, input: 
   });
 }
 
-async function takeOut(groupId: string, userId: string, by: Actor, action: string): Promise<void> {
+async function takeOut(
+  groupId: string,
+  userId: string,
+  by: Actor,
+  action: 'member.removed' | 'member.left'
+): Promise<void> {
   await database().transaction(async (tx) => {
     const member = await lockMember(tx, groupId, userId);
     keepALead(member);

@@ -1,5 +1,6 @@
 import { and, eq } from 'drizzle-orm';
-import { evolve } from '$lib/review/workflow';
+import { evolve, type ReviewEvent } from '$lib/review/workflow';
+import type { AuditAction } from '$lib/schema/audit';
 import type { VerdictInput } from '$lib/schema/review';
 import { requireTree, type Actor } from '../auth/authorize';
 import { database } from '../db';
@@ -8,6 +9,16 @@ import { ServiceError } from '../errors';
 import { audit } from './audit';
 import { mailVerdict } from './review-mail';
 import { decideOn, lockReview } from './review-state';
+
+const AUDITED: Record<ReviewEvent['type'], AuditAction> = {
+  'review-asked': 'revision.review-asked',
+  'revision-superseded': 'revision.superseded',
+  'revision-withdrawn': 'revision.withdrawn',
+  'approval-given': 'revision.approval-given',
+  'revision-approved': 'revision.approved',
+  'changes-asked': 'revision.changes-asked',
+  'tree-changed': 'tree.edited'
+};
 
 /**
  * Records a named reviewer's verdict on exactly the revision that they looked at.
@@ -44,7 +55,7 @@ export async function giveVerdict(actor: Actor | null, treeId: string, input: Ve
     for (const event of events)
       await audit(tx, reviewer, {
         groupId: group.id,
-        action: `revision.${event.type.replace('revision-', '')}`,
+        action: AUDITED[event.type],
         subjectKind: 'revision',
         subjectId: open.id,
         details: { treeId, number, hash: open.hash, reason: reason || null }

@@ -1,3 +1,5 @@
+import { AUDIT_WORDS, type AuditAction } from '$lib/schema/audit';
+
 type Details = Record<string, unknown>;
 
 const text = (details: Details, key: string): string => {
@@ -5,38 +7,9 @@ const text = (details: Details, key: string): string => {
   return typeof value === 'string' || typeof value === 'number' ? String(value) : '';
 };
 
-/** What each act is called, in the past tense and for a reader who does not know the program. */
-const WORDS: Record<string, string> = {
-  'group.created': 'started the group',
-  'group.renamed': 'renamed the group',
-  'group.defaults-changed': 'changed the defaults',
-  'member.invited': 'invited somebody',
-  'member.invitation-withdrawn': 'withdrew an invitation',
-  'member.joined': 'joined the group',
-  'member.role-changed': 'changed a role',
-  'member.studies-opened': 'chose the studies of a guest',
-  'member.removed': 'took a member out',
-  'member.left': 'left the group',
-  'study.created': 'created a study',
-  'study.edited': 'edited a study',
-  'study.deleted': 'deleted a study',
-  'run.uploaded': 'uploaded a run',
-  'run.deleted': 'deleted a run',
-  'tree.built': 'built trees',
-  'tree.edited': 'edited a tree',
-  'claim.confirm': 'confirmed an ion',
-  'claim.confirmed': 'confirmed an ion',
-  'claim.reject': 'rejected an ion',
-  'claim.rejected': 'rejected an ion',
-  'claim.open': 'left an ion open',
-  'claim.opened': 'left an ion open',
-  'claim.undo': 'took a decision back',
-  'claim.undone': 'took a decision back'
-};
-
-/** "changed a role"; an act without an entry is said by its own name: 'share-link.made' gives "share link made". */
+/** "changed a role"; an act of a later version is said by its own name: 'share-link.made' gives "share link made". */
 export function actionWords(action: string): string {
-  return WORDS[action] ?? action.replace(/[.-]/g, ' ');
+  return Object.hasOwn(AUDIT_WORDS, action) ? AUDIT_WORDS[action as AuditAction] : action.replace(/[.-]/g, ' ');
 }
 
 /** What exactly, in a few words; empty where the act says it all. */
@@ -52,6 +25,7 @@ export function detailWords(action: string, details: Details): string {
     case 'member.studies-opened':
       return `${name}: ${text(details, 'studies')} open`;
     case 'group.renamed':
+    case 'user.renamed':
       return `${from} → ${to}`;
     case 'group.defaults-changed':
       return `approvals ${text(details, 'approvalsNeeded')}, elements ${text(details, 'elements') || 'as the program'}`;

@@ -1,0 +1,42 @@
+/** What each act in the audit log is called, in the past tense and for a reader who does not know the program. */
+export const AUDIT_WORDS = {
+  'group.created': 'started the group',
+  'group.renamed': 'renamed the group',
+  'group.defaults-changed': 'changed the defaults',
+  'member.invited': 'invited somebody',
+  'member.invitation-withdrawn': 'withdrew an invitation',
+  'member.joined': 'joined the group',
+  'member.role-changed': 'changed a role',
+  'member.studies-opened': 'chose the studies of a guest',
+  'member.removed': 'took a member out',
+  'member.left': 'left the group',
+  'study.created': 'created a study',
+  'study.edited': 'edited a study',
+  'study.deleted': 'deleted a study',
+  'run.uploaded': 'uploaded a run',
+  'run.deleted': 'deleted a run',
+  'tree.built': 'built trees',
+  'tree.edited': 'edited a tree',
+  'claim.confirmed': 'confirmed an ion',
+  'claim.rejected': 'rejected an ion',
+  'claim.opened': 'left an ion open on purpose',
+  'claim.undone': 'took a decision back',
+  'remark.written': 'wrote a remark',
+  'remark.answered': 'answered a remark',
+  'remark.resolved': 'resolved a remark',
+  'remark.reopened': 'reopened a remark',
+  'revision.review-asked': 'asked for review',
+  'revision.opened': 'looked at a revision',
+  'revision.approval-given': 'approved a revision',
+  'revision.approved': 'completed the approval',
+  'revision.changes-asked': 'asked for changes',
+  'revision.withdrawn': 'withdrew a revision from review',
+  'revision.superseded': 'replaced a revision under review',
+  'share-link.created': 'shared a link',
+  'share-link.revoked': 'revoked a link',
+  'user.renamed': 'changed their name',
+  'user.password-changed': 'changed their password'
+} as const satisfies Record<string, string>;
+
+/** 'subject.past-tense'; an act that is logged must have words here. */
+export type AuditAction = keyof typeof AUDIT_WORDS;
