@@ -87,3 +87,21 @@ export function directionOf(roots: readonly GraphBranch[], aspect: number): 'dow
   };
   return fit('down') >= fit('right') ? 'down' : 'right';
 }
+
+/** Half of a label with its mark, px at zoom 1. */
+const HALF = { x: 56, y: 22 };
+
+/** The zoom at which the whole of a graph is seen in a pane. @param pane width and height in px */
+export function zoomToShow(roots: readonly GraphBranch[], pane: { width: number; height: number }): number {
+  const points = [...layOut(roots, directionOf(roots, pane.width / pane.height)).values()];
+  const reach = (values: number[], half: number) => Math.max(...values) - Math.min(...values) + 2 * half;
+  const across = reach(
+    points.map(({ x }) => x),
+    HALF.x
+  );
+  const along = reach(
+    points.map(({ y }) => y),
+    HALF.y
+  );
+  return Math.min(pane.width / across, pane.height / along);
+}

@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import type { IonItem } from '$lib/state/ion-rows';
-import { directionOf, layOut, STEPS } from './graph-layout';
+import { directionOf, layOut, STEPS, zoomToShow } from './graph-layout';
 import { branchesOf, graphOf, mainIons } from './graph-model';
 
 let nextId = 1;
@@ -100,5 +100,16 @@ describe('layOut', () => {
   });
   it('has a place for every node', () => {
     expect(layOut(wide, 'right').size).toBe(13);
+  });
+});
+
+describe('zoomToShow', () => {
+  it('shrinks with the number of ions and grows with the pane', () => {
+    const leaves = (count: number) =>
+      Array.from({ length: count }, (_, i) => ion(`C${i + 2}H5`, 30 + 12 * i, ['C19H25N2O5', 361.18, 'X']));
+    const roots = (count: number) => branchesOf(graphOf([top, ...leaves(count)]));
+    const pane = { width: 600, height: 300 };
+    expect(zoomToShow(roots(12), pane)).toBeLessThan(zoomToShow(roots(4), pane));
+    expect(zoomToShow(roots(12), { width: 1200, height: 600 })).toBeCloseTo(2 * zoomToShow(roots(12), pane), 9);
   });
 });

@@ -34,7 +34,7 @@ export function claimedConfidence(stated: string | null): Confidence {
   const level = capped ? HIGHEST : stated;
   return {
     level,
-    text: `Level ${level} of at most ${HIGHEST}: ${LEVELS[level]} (${CITATION}).`,
+    text: `Level ${level}, ${LEVELS[level]} (${CITATION}). A fragmentation tree alone carries level ${HIGHEST} at most.`,
     note: capped
       ? `Level ${stated} was stated; it needs ${stated === '1' ? 'a reference standard' : 'a library spectrum'}, which is no part of this tree.`
       : null

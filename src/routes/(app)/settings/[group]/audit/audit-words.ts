@@ -29,15 +29,30 @@ export function detailWords(action: string, details: Details): string {
       return `${from} → ${to}`;
     case 'group.defaults-changed':
       return `approvals ${text(details, 'approvalsNeeded')}, elements ${text(details, 'elements') || 'as the program'}`;
+    case 'claim.confirmed':
+    case 'claim.rejected':
+    case 'claim.opened':
+    case 'claim.undone':
+      return claimWords(details);
+    case 'share-link.created':
+      return `until ${text(details, 'expiresAt').slice(0, 10)}`;
     default:
       return plainDetails(details);
   }
 }
 
+/** "m/z 283.1442, C17H19N2O2 – the loss is doubtful" */
+function claimWords(details: Details): string {
+  const { before, after } = details as Record<string, { formula?: string | null } | undefined>;
+  const formula = after?.formula ?? before?.formula;
+  const ion = [`m/z ${shown(details.mz)}`, formula].filter(Boolean).join(', ');
+  return [ion, text(details, 'reason')].filter(Boolean).join(' – ').slice(0, 300);
+}
+
 /** Names, formulas, numbers and the like as they are; ids and nested values say nothing to a reader. */
 function plainDetails(details: Details): string {
   return Object.entries(details)
-    .filter(([key, value]) => /string|number/.test(typeof value) && value !== '' && !/id$|hash|version/i.test(key))
+    .filter(([key, value]) => /string|number/.test(typeof value) && value !== '' && !/id$|hash|version|^reply$/i.test(key))
     .map(([key, value]) => (key === 'name' ? String(value) : `${spaced(key)} ${shown(value)}`))
     .join(', ')
     .slice(0, 300);
