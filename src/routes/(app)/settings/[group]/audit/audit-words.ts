@@ -52,7 +52,9 @@ function claimWords(details: Details): string {
 /** Names, formulas, numbers and the like as they are; ids and nested values say nothing to a reader. */
 function plainDetails(details: Details): string {
   return Object.entries(details)
-    .filter(([key, value]) => /string|number/.test(typeof value) && value !== '' && !/id$|hash|version|^reply$/i.test(key))
+    .filter(
+      ([key, value]) => /string|number/.test(typeof value) && value !== '' && !/id$|hash|version|^reply$/i.test(key)
+    )
     .map(([key, value]) => (key === 'name' ? String(value) : `${spaced(key)} ${shown(value)}`))
     .join(', ')
     .slice(0, 300);
