@@ -7,6 +7,9 @@ const failureSchema = z.object({
   details: z.unknown().optional()
 });
 
+/** What the server says of a failure of its own (`handleError` in hooks.server.ts). */
+const accidentSchema = z.object({ message: z.string(), cure: z.string().optional() });
+
 /** A refused request in the server's own words. `status` 0: the server could not be reached. */
 export class ApiError extends Error {
   constructor(
@@ -22,11 +25,15 @@ export class ApiError extends Error {
 }
 
 async function failureOf(response: Response): Promise<ApiError> {
-  const read = failureSchema.safeParse(await response.json().catch(() => null));
+  const body: unknown = await response.json().catch(() => null);
+  const read = failureSchema.safeParse(body);
   if (read.success) {
     const { error, code, cure, details } = read.data;
     return new ApiError(response.status, error, code ?? null, cure ?? null, details ?? null);
   }
+  const accident = accidentSchema.safeParse(body);
+  if (accident.success)
+    return new ApiError(response.status, accident.data.message, null, accident.data.cure ?? 'Try again.');
   return new ApiError(response.status, `The server answered with status ${response.status}.`, null, 'Try again.');
 }
 
@@ -40,7 +47,10 @@ export async function request<T>(path: string, method = 'GET', body?: unknown, s
     response = await fetch(path, {
       method,
       signal,
-      headers: body === undefined ? {} : { 'content-type': 'application/json' },
+      headers: {
+        accept: 'application/json',
+        ...(body === undefined ? {} : { 'content-type': 'application/json' })
+      },
       body: body === undefined ? undefined : JSON.stringify(body)
     });
   } catch (e) {

@@ -3,14 +3,22 @@ import { constants, gunzipSync } from 'node:zlib';
 import { ServiceError } from '../errors';
 
 const HEAD = 64 * 1024;
+/** Beyond deflate's greatest ratio for anything but long repeats: no mzML reaches it. */
+const INFLATED_HEAD = 1 << 26;
 const CURE = 'Convert the original data to mzML 1.1 and upload that file.';
 
 /** First bytes of the XML, inflated where the file is gzipped; what is left of a cut gzip stream is enough. */
 function xmlHead(head: Buffer): Buffer {
   if (head[0] !== 0x1f || head[1] !== 0x8b) return head;
   try {
-    return gunzipSync(head, { finishFlush: constants.Z_SYNC_FLUSH, maxOutputLength: 1 << 26 }).subarray(0, HEAD);
-  } catch {
+    return gunzipSync(head, { finishFlush: constants.Z_SYNC_FLUSH, maxOutputLength: INFLATED_HEAD }).subarray(0, HEAD);
+  } catch (error) {
+    if ((error as NodeJS.ErrnoException).code === 'ERR_BUFFER_TOO_LARGE')
+      throw new ServiceError(
+        'invalid',
+        `The first 64 kB of the gzip file inflate to more than ${INFLATED_HEAD >> 20} MiB; no mzML does, so it is refused.`,
+        CURE
+      );
     throw new ServiceError('invalid', 'The file begins like gzip, but cannot be inflated.', 'Compress it again.');
   }
 }
