@@ -1,7 +1,6 @@
 import { eq } from 'drizzle-orm';
 import { spawn, type ChildProcess } from 'node:child_process';
 import { once } from 'node:events';
-import { createServer, connect as dial, type Server, type Socket } from 'node:net';
 import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest';
 import type { Actor } from '$lib/server/auth/authorize';
 import { database } from '$lib/server/db';
@@ -13,6 +12,7 @@ import { claim, enqueue } from '$lib/server/jobs/queue';
 import { reap } from '$lib/server/jobs/settle';
 import { JobThreads } from '$lib/server/jobs/threads';
 import { cancelJob, jobsForDesk, readJob, retryJob } from '$lib/server/services/jobs';
+import { openGate } from '../helpers/gate';
 import { addPerson, addRun, addStudy, openStage, smallRun, until, type Stage } from './support/stage';
 
 let stage: Stage;
@@ -224,7 +224,7 @@ describe('accidents', () => {
   });
 
   it('the database away in mid-file: the work waits and goes on, nothing is lost or double', async () => {
-    const gate = await openGate(new URL(stage.url));
+    const gate = await openGate(stage.url);
     const { runId, jobId } = await addRun(database(), place, smallRun(4000));
     const through = connect(gate.url);
     const threads = new JobThreads({ ...process.env, DATABASE_URL: gate.url });
@@ -242,32 +242,3 @@ describe('accidents', () => {
     expect(await database().$count(scans, eq(scans.runId, runId))).toBe(12_000);
   });
 });
-
-/** A way to the database that can be cut: all connections break, new ones are refused, until it is opened again. */
-async function openGate(target: URL) {
-  const port = 20_000 + Math.floor(Math.random() * 20_000);
-  let server: Server | null = null;
-  const sockets = new Set<Socket>();
-  const open = () =>
-    new Promise<void>((resolve) => {
-      server = createServer((client) => {
-        const upstream = dial(Number(target.port), target.hostname);
-        for (const socket of [client, upstream]) {
-          sockets.add(socket);
-          socket.on('error', () => undefined).on('close', () => sockets.delete(socket));
-        }
-        client.pipe(upstream).pipe(client);
-      }).listen(port, '127.0.0.1', resolve);
-    });
-  const shut = () =>
-    new Promise<void>((resolve) => {
-      for (const socket of sockets) socket.destroy();
-      if (server) server.close(() => resolve());
-      else resolve();
-      server = null;
-    });
-  await open();
-  const url = new URL(target);
-  url.port = String(port);
-  return { url: url.href, open, shut };
-}
