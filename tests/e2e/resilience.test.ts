@@ -201,6 +201,8 @@ describe('the server killed in mid-file', () => {
     await open(page, `${world.study}/runs`);
     await page.getByRole('table', { name: 'Runs' }).getByRole('link', { name: 'many.mzML' }).click();
     await page.getByRole('heading', { name: /^Precursor ions/ }).waitFor({ timeout: 120_000 });
+    const surveys = 400 * (cycle.match(/name="ms level" value="1"/g) ?? []).length;
+    expect(await page.getByRole('main').innerText()).toContain(`MS1 ${surveys}`);
   });
 });
 
