@@ -7,7 +7,8 @@ import { readRun } from '../lib/core/mzml';
 import { suggest } from '../lib/core/suggest';
 import { assemble } from '../lib/core/tree';
 import { fileJson, treeJson, warningText, type TreeJson } from './output';
-import { gunzip, hashedFile, inflate, sha1 } from './platform';
+import { nodeReading } from '../lib/node/reading';
+import { hashedFile } from './platform';
 
 export interface AnnotateOptions {
   /** m/z; null for all precursor ions. */
@@ -35,7 +36,7 @@ export interface AnnotatedTree {
 /** Reads a file and assembles its trees. Errors as for `readMzml`. */
 export async function assembleFile(path: string, options: AnnotateOptions): Promise<AssembledFile> {
   const hash = createHash('sha1');
-  const { scans, summary } = await readRun(hashedFile(path, hash), { inflate, gunzip, sha1 });
+  const { scans, summary } = await readRun(hashedFile(path, hash), { ...nodeReading });
   const wanted = options.precursorMz;
   const assembly = assemble(scans, summary.info, {
     separateEnergies: !options.mergeEnergies,

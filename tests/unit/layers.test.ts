@@ -18,6 +18,7 @@ const ALL_LOWER = ['core', 'review', 'schema', 'server/db', 'server/auth', 'serv
  */
 const RULES: Readonly<Record<string, Rule>> = {
   core: { uses: [], packages: ['fast-xml-parser', 'openchemlib', 'pako'] },
+  node: { uses: ['core'], packages: ['node:'] },
   review: { uses: ['core'], types: ['schema'], packages: ['zod'] },
   schema: { uses: ['core', 'review'], packages: ['zod'] },
   workers: { uses: ['core'], packages: [] },
@@ -40,10 +41,10 @@ const RULES: Readonly<Record<string, Rule>> = {
     packages: ['lucia', '@lucia-auth/', 'drizzle-orm', '@sveltejs/kit', 'node:']
   },
   'server/report': { uses: [...SERVER_BASE, 'core', 'review', 'schema'], packages: ['pdfmake', '@ibm/', 'node:'] },
-  'server/services': { uses: [...SERVER_BASE, ...ALL_LOWER, 'server/jobs', 'server/report'], packages: 'any' },
+  'server/services': { uses: [...SERVER_BASE, ...ALL_LOWER, 'node', 'server/jobs', 'server/report'], packages: 'any' },
   'server/jobs': { uses: [...SERVER_BASE, ...ALL_LOWER, 'server/services'], packages: 'any' },
   'server/demo': { uses: [...SERVER_BASE, ...ALL_LOWER, 'server/services', 'server/jobs'], packages: 'any' },
-  cli: { uses: ['core', 'schema'], packages: ['node:', 'tsx'] },
+  cli: { uses: ['core', 'node', 'schema'], packages: ['node:', 'tsx'] },
   ops: {
     uses: ['schema', 'server/db', 'server/demo', 'server/services', 'server/config', 'server/storage'],
     packages: 'any'

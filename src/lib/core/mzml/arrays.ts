@@ -36,12 +36,19 @@ export function describeArray(params: Params): ArrayDescription {
   return { kind, type, compression, unsupported };
 }
 
+/** The byte order of the machine, which typed arrays follow. */
+const IS_LITTLE_ENDIAN = new Uint8Array(Uint16Array.of(1).buffer)[0] === 1;
+
+/** The numbers of an array; they may share the memory of its bytes. */
 function toDoubles(bytes: Uint8Array, type: NumberType): Float64Array {
   const size = BYTES[type];
   if (bytes.length % size !== 0) {
     throw new CoreError('bad-array', `An array of ${bytes.length} bytes does not hold whole numbers of ${size} bytes`);
   }
   const count = bytes.length / size;
+  const aligned = IS_LITTLE_ENDIAN && bytes.byteOffset % size === 0 ? bytes : null;
+  if (aligned && type === 'f64') return new Float64Array(bytes.buffer, bytes.byteOffset, count);
+  if (aligned && type === 'f32') return new Float64Array(new Float32Array(bytes.buffer, bytes.byteOffset, count));
   const values = new Float64Array(count);
   const view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
   if (type === 'f64') for (let i = 0; i < count; i++) values[i] = view.getFloat64(i * 8, true);
@@ -77,7 +84,7 @@ export function decodeArray(
       `The spectrum declares ${declared} points, more than the ${settings.limits.arrayPoints} allowed`
     );
   }
-  let bytes = decodeBase64(text);
+  let bytes = settings.base64(text) ?? decodeBase64(text);
   if (bytes.length === 0) return new Float64Array(0);
   const { numpress, zlib } = array.compression;
   if (zlib) {

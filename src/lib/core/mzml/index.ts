@@ -1,6 +1,13 @@
 /** Reading and writing mzML. The only door to this folder. */
 export { readMzml, readRun, type MzmlEvent, type RunStart, type RunSummary } from './read';
-export { DEFAULT_LIMITS, type Inflate, type ReadLimits, type ReadOptions, type StreamingHash } from './options';
+export {
+  DEFAULT_LIMITS,
+  type Inflate,
+  type QuickBase64,
+  type ReadLimits,
+  type ReadOptions,
+  type StreamingHash
+} from './options';
 export { parseFilterString, type FilterStage, type FilterString } from './filter-string';
 export { centroid, isCentroided } from './centroid';
 export { WarningCollector } from './warnings';

@@ -42,7 +42,15 @@ export interface StreamingHash {
  */
 export type Inflate = (bytes: Uint8Array, expectedLength: number, maxLength: number) => Uint8Array;
 
+/**
+ * Decodes base64 text that a platform knows how to decode fast. Returns null for everything but whole quartets of the
+ * alphabet of RFC 4648, section 4, with its padding: the reader then decodes it by itself, or says what is wrong.
+ */
+export type QuickBase64 = (text: Uint8Array) => Uint8Array | null;
+
 export interface ReadOptions {
+  /** base64 of plainly written arrays; default: the reader's own. */
+  base64?: QuickBase64;
   /** zlib of one array; default: pako. */
   inflate?: Inflate;
   /** gzip of the whole file (all members); default: pako. */
@@ -65,6 +73,7 @@ export interface ReadOptions {
 /** Options with every default filled in. */
 export interface ReadSettings {
   inflate: Inflate;
+  base64: QuickBase64;
   centroid: boolean;
   peaks: boolean;
   limits: ReadLimits;
@@ -74,6 +83,7 @@ export interface ReadSettings {
 export function readSettings(options: ReadOptions): ReadSettings {
   return {
     inflate: options.inflate ?? inflateWithPako,
+    base64: options.base64 ?? (() => null),
     centroid: options.centroid ?? true,
     peaks: options.peaks ?? true,
     limits: { ...DEFAULT_LIMITS, ...options.limits }

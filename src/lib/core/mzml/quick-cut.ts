@@ -2,6 +2,7 @@
 import type { ByteWindow } from './byte-window';
 import { quickRecord } from './quick-scan';
 import type { SpectrumRecord } from './record';
+import { Templates } from './template';
 import { WindowText } from './window-text';
 
 const END = '</spectrum>';
@@ -19,6 +20,7 @@ export interface QuickSpectrum {
 
 export class QuickCutter {
   private readonly view = new WindowText();
+  private readonly templates = new Templates();
   /** the number of bytes from which it makes sense to look for the end of the present spectrum once more. */
   private enough = 0;
 
@@ -42,6 +44,8 @@ export class QuickCutter {
     const { view } = this;
     view.cover(window, start);
     const at = start - view.from;
+    const known = this.templates.match(view.text, at);
+    if (known) return { record: known.record, ...this.place(window, known.binaries, known.end) };
     const end = view.text.indexOf(END, at);
     if (end < 0) {
       this.enough = held * 1.5;
@@ -50,11 +54,17 @@ export class QuickCutter {
     const ranges = findBinaries(view.text, at, end);
     const record = ranges && quickRecord(view.text, at, ranges);
     if (!record) return 'unusual';
+    const behind = end + END.length;
+    this.templates.learn(view.text, at, behind, ranges);
+    return { record, ...this.place(window, ranges, behind) };
+  }
+
+  /** From indexes into the text to bytes and an absolute end. */
+  private place(window: ByteWindow, ranges: readonly number[], end: number): Pick<QuickSpectrum, 'binaries' | 'end'> {
+    const { from } = this.view;
     const binaries: Uint8Array[] = [];
-    for (let i = 0; i < ranges.length; i += 2) {
-      binaries.push(window.slice(view.from + ranges[i], view.from + ranges[i + 1]));
-    }
-    return { record, binaries, end: view.from + end + END.length };
+    for (let i = 0; i < ranges.length; i += 2) binaries.push(window.slice(from + ranges[i], from + ranges[i + 1]));
+    return { binaries, end: from + end };
   }
 }
 

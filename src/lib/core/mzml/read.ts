@@ -28,6 +28,9 @@ export type MzmlEvent =
   | { kind: 'scan'; scan: Scan; byte: number; length: number }
   | { kind: 'end'; summary: RunSummary };
 
+/** Bytes looked at together: so many fit into the cache of a processor, and little memory is held. */
+const PORTION = 128 << 10;
+
 class RunReader {
   readonly warnings = new WarningCollector();
   private head: FileHead | null = null;
@@ -37,6 +40,7 @@ class RunReader {
   private polarity: RunInfo['polarity'] = null;
   private seen = 0;
   private firstFailure: CoreError | null = null;
+  private stop: CoreError | null = null;
   scanCount = 0;
 
   constructor(private readonly settings: ReadSettings) {}
@@ -90,6 +94,11 @@ class RunReader {
     );
   }
 
+  /** The bytes end with this error; what came before is used. */
+  stopAt(error: CoreError): void {
+    this.stop = error;
+  }
+
   private skip(id: string, level: number | null): null {
     if (level !== null) this.levels[level] = (this.levels[level] ?? 0) + 1;
     this.warnings.add(
@@ -111,7 +120,10 @@ class RunReader {
 
   finish(end: CutEnd): RunSummary {
     const { run } = this;
-    if (!run) throw endsEarly(end);
+    if (!run) throw this.stop ?? endsEarly(end);
+    if (this.stop) {
+      this.warnings.add('damaged-gzip', `${this.stop.message}: only what comes before the damage was read`);
+    }
     if (this.scanCount === 0) throw this.nothingRead(end);
     if (!end.closed) this.warnTruncated(end);
     const checksum = this.checksum(end);
@@ -140,7 +152,8 @@ class RunReader {
   }
 
   private nothingRead(end: CutEnd): CoreError {
-    if (this.firstFailure) return this.firstFailure;
+    const failure = this.firstFailure ?? this.stop;
+    if (failure) return failure;
     if (!end.closed) return endsEarly(end);
     const skipped = this.warnings.list.some((warning) => warning.code === 'not-mass-spectra');
     const what = skipped
@@ -200,15 +213,27 @@ export async function* readMzml(
   const counted = (bytes: number) => {
     taken += bytes;
   };
-  for await (const bytes of uncompressed(source, options, settings.limits, counted)) {
+  for await (const bytes of untilDamaged(uncompressed(source, options, settings.limits, counted), reader)) {
     if (options.isCancelled?.()) throw cancelled();
-    cutter.push(bytes);
-    yield* piecesRead(cutter, reader);
+    for (let at = 0; at < bytes.length; at += PORTION) {
+      cutter.push(bytes.subarray(at, at + PORTION));
+      yield* piecesRead(cutter, reader);
+    }
     options.onProgress?.(taken, reader.scanCount);
   }
   cutter.end();
   yield* piecesRead(cutter, reader);
   yield { kind: 'end', summary: reader.finish(cutter.finish()) };
+}
+
+/** The bytes up to where the gzip stream is damaged: the scans before that can be used. */
+async function* untilDamaged(stream: AsyncIterable<Uint8Array>, reader: RunReader): AsyncGenerator<Uint8Array> {
+  try {
+    yield* stream;
+  } catch (error) {
+    if (!(error instanceof CoreError) || error.code !== 'truncated') throw error;
+    reader.stopAt(error);
+  }
 }
 
 /** Reads what can be cut from the bytes at hand. */

@@ -1,10 +1,9 @@
 import { and, eq } from 'drizzle-orm';
-import { createHash } from 'node:crypto';
-import { pipeline, type Readable } from 'node:stream';
-import { createGunzip, inflateSync } from 'node:zlib';
+import type { Readable } from 'node:stream';
 import { CoreError } from '$lib/core/errors';
 import { readMzml, type ReadOptions, type RunSummary } from '$lib/core/mzml';
 import type { RunInfo, RunWarning, Scan, ScanHeader } from '$lib/core/model';
+import { nodeReading } from '$lib/node/reading';
 import { sizeText } from '$lib/schema/upload';
 import { packPeaks } from '../db/packing';
 import { runPrecursors, runs, scans } from '../db/schema';
@@ -18,42 +17,6 @@ type ScanRow = typeof scans.$inferInsert;
 /** One insert takes at most so many scans and so many bytes of packed peaks. */
 const BATCH_ROWS = 200;
 const BATCH_BYTES = 4 << 20;
-
-const platform: Pick<ReadOptions, 'inflate' | 'sha1' | 'gunzip'> = {
-  inflate: (bytes, _expected, maxLength) => {
-    try {
-      return inflateSync(bytes, { maxOutputLength: Math.max(1, maxLength) });
-    } catch (error) {
-      if ((error as NodeJS.ErrnoException).code === 'ERR_BUFFER_TOO_LARGE')
-        throw new CoreError('inflate-limit', `An array inflates to more than the ${maxLength} bytes it declares`);
-      throw new CoreError('bad-array', 'zlib data are damaged');
-    }
-  },
-  sha1: () => {
-    const hash = createHash('sha1');
-    return { update: (bytes) => void hash.update(bytes), hex: () => hash.digest('hex') };
-  },
-  gunzip: (source) => gunzipped(source)
-};
-
-/** Node's gunzip over all members; a file that ends in mid-stream simply ends, so that its complete scans are kept. */
-async function* gunzipped(source: AsyncIterable<Uint8Array>): AsyncGenerator<Uint8Array> {
-  const stream = pipeline(source, createGunzip({ chunkSize: 1 << 18 }), () => undefined) as unknown as Readable;
-  try {
-    yield* stream;
-  } catch (error) {
-    const { code } = error as NodeJS.ErrnoException;
-    if (code === 'Z_BUF_ERROR') return;
-    if (code?.startsWith('Z_'))
-      throw new CoreError(
-        'truncated',
-        'The gzip stream is damaged',
-        undefined,
-        'Compress the file again, or upload it uncompressed.'
-      );
-    throw error;
-  }
-}
 
 function scanRow(runId: string, scan: Scan): ScanRow {
   const { peaks, ...header } = scan;
@@ -161,7 +124,7 @@ export async function readRunJob(context: JobContext) {
       total: run.bytes,
       what: `Reading: ${sizeText(bytes)} of ${sizeText(run.bytes)}, ${count} scans`
     });
-  const options: ReadOptions = { ...platform, onProgress, isCancelled: context.isCancelled };
+  const options: ReadOptions = { ...nodeReading, onProgress, isCancelled: context.isCancelled };
   for await (const event of readMzml(watched(await store.open(run.storageKey)), options)) {
     if (event.kind === 'scan') {
       const { peaks, ...header } = event.scan;
