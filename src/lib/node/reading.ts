@@ -64,7 +64,8 @@ function feed(stream: Gunzip, bytes: Uint8Array | null): Promise<void> {
  * @throws CoreError `truncated` for other damage, behind everything that came before it
  */
 export async function* gunzip(source: AsyncIterable<Uint8Array>): AsyncGenerator<Uint8Array> {
-  const stream = createGunzip({ chunkSize: 1 << 18 });
+  // What a failing step has inflated is lost, so the steps are small.
+  const stream = createGunzip({ chunkSize: 1 << 16 });
   const inflated: Uint8Array[] = [];
   let failure: unknown = null;
   stream.on('data', (piece: Uint8Array) => inflated.push(piece));
