@@ -3,6 +3,7 @@ import { type IonFormula, type IonSpace } from './ion-space';
 import { sumTerms, type PeakCandidate } from './peak-candidates';
 import { isOdd, type StageResult, type StageSolver, type StageVertex } from './stage-solver';
 import { type StageNode, type StagePeak } from './stages';
+import { WEIGHTS } from './weights';
 
 /** A chosen parent of a candidate: the isolated ion (vertex null) or another chosen ion of the same stage. */
 interface Attachment {
@@ -35,6 +36,47 @@ export function openIon(mz: number, intensity: number, charge: number, remark: A
     terms: {},
     alternatives: []
   };
+}
+
+/** Log odds below which a formula of an ion as weak as noise is no more than a chance hit. */
+const CHANCE_HIT = -2;
+
+/** Whether loss and composition speak for a formula when its mass error is judged as between molecules, unsharpened. */
+function isPlausible(ion: AnnotatedIon): boolean {
+  const sharpened = ion.terms['mass error'] ?? 0;
+  return (ion.score ?? -Infinity) - sharpened * (1 - 1 / WEIGHTS.massEmphasis ** 2) > CHANCE_HIT;
+}
+
+/** An ion that keeps what could be proposed but is not. */
+const leftOpen = (ion: AnnotatedIon): AnnotatedIon => ({
+  ...openIon(ion.mz, ion.intensity, ion.charge, ion.remark ?? 'noise'),
+  alternatives: ion.alternatives
+});
+
+/** Fewer unexplained peaks than this tell nothing of the noise. */
+const FEWEST_NOISE_PEAKS = 8;
+const NOISE_QUANTILE = 0.9;
+
+/** A peak, and whether any sub-formula of the isolated ion fits it. */
+type Explained = Pick<StagePeak, 'spectrum' | 'intensity'> & { explained: boolean };
+
+/**
+ * How strong noise is in each spectrum, told by the peaks that no sub-formula fits. Where most peaks of that strength
+ * have a formula, the unexplained ones are no measure, and no level is given.
+ * @returns intensity by spectrum
+ */
+export function noiseLevels(peaks: readonly Explained[]): Map<number, number> {
+  const levels = new Map<number, number>();
+  for (const spectrum of new Set(peaks.map((peak) => peak.spectrum))) {
+    const own = peaks.filter((peak) => peak.spectrum === spectrum);
+    const noise = own.filter((peak) => !peak.explained).map((peak) => peak.intensity);
+    if (noise.length < FEWEST_NOISE_PEAKS) continue;
+    noise.sort((a, b) => a - b);
+    const level = noise[Math.floor(NOISE_QUANTILE * (noise.length - 1))];
+    const fitting = own.filter((peak) => peak.explained && peak.intensity <= level).length;
+    if (fitting <= noise.length) levels.set(spectrum, level);
+  }
+  return levels;
 }
 
 /** Every ion of every spectrum without a formula, for trees whose precursor formula is unknown. */
@@ -75,10 +117,19 @@ export class Annotator {
     for (const peak of node.peaks) {
       if (peak.role === 'precursor') this.put(peak, this.precursorIon(peak, ion, charge, peak === precursor));
     }
+    const ownOf = result.colours.map((_, c) => result.vertices.filter((v) => v.colour === c));
+    const noise = noiseLevels(
+      result.colours.flatMap(({ peak }, c) => (peak ? [{ ...peak, explained: ownOf[c].length > 0 }] : []))
+    );
     result.colours.forEach((colour, c) => {
-      const own = result.vertices.filter((v) => v.colour === c);
+      const own = ownOf[c];
       const chosen = result.solution.chosen[c] < 0 ? null : result.vertices[result.solution.chosen[c]];
-      if (colour.peak) this.put(colour.peak, this.productIon(node, result, colour.peak, own, chosen));
+      if (colour.peak) {
+        const ion = this.productIon(node, result, colour.peak, own, chosen);
+        const { peak } = colour;
+        const weak = !peak.confirmed && peak.intensity <= (noise.get(peak.spectrum) ?? 0);
+        this.put(peak, weak && !isPlausible(ion) ? leftOpen(ion) : ion);
+      }
       const winner = chosen ?? this.bestOf(node, result, own);
       for (const child of colour.children) this.below(child, winner);
     });

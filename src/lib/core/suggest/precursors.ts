@@ -4,6 +4,7 @@ import { CoreError } from '../errors';
 import { forEachFormula, formulaSpace, type FormulaSpace } from '../formula/solve';
 import { type Composition, type ElementRanges } from '../model';
 import { IonSpace, type IonFormula } from './ion-space';
+import { ionTypeLogOdds } from './ion-type-prior';
 import { moleculeTerms } from './molecule-prior';
 import { massErrorTerm, sumTerms } from './peak-candidates';
 import { type ScoreTerms } from '../model';
@@ -134,11 +135,17 @@ export function enumeratePrecursors(
     const mass = neutralMassOf(mz, adduct);
     const reach = (window * Math.abs(adduct.charge)) / adduct.molecules;
     const preCharged = adduct.name === '[M]+';
+    // A single ion type was chosen by somebody: nothing is left to weigh.
+    const usual = adducts.length > 1 ? ionTypeLogOdds(adduct.name) : 0;
     forEachFormula(neutralSpace(ions, ranges, mass), mass - reach, mass + reach, (counts) => {
       const bonds = ions.dbe(counts);
       if (bonds < 0 || Number.isInteger(bonds) === preCharged) return;
       const made = precursorOf(ions, counts, adduct, mz, sigma);
       if (!made) return;
+      if (usual !== 0) {
+        made.terms['ion type'] = usual;
+        made.prior += usual;
+      }
       if (list.length >= MAX_PRECURSORS) throw tooMany(mz);
       list.push(made);
     });

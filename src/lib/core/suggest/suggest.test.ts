@@ -196,3 +196,47 @@ describe('suggest without a formula', () => {
     expect(() => suggest(treeOf('positive', [cocaine()]), options({ adducts: ['[M-H]-'] }))).toThrow(/positive/);
   });
 });
+
+describe('noise', () => {
+  // Invented: 200 peaks at places of no meaning, each 0.02 percent of the base peak.
+  const noise = Array.from({ length: 200 }, (_, i) => [52.013 + i * 1.2 + ((i * 37) % 11) * 0.021, 0.02] as const);
+  const noisy = spectrum({
+    ...{ path: [mz(COCAINE[0])], analyser: 'orbitrap' },
+    peaks: [...COCAINE.map((f, i) => [mz(f), 100 - 10 * i] as const), ...noise]
+  });
+
+  it('is left open, with what could be proposed, and the ions of the molecule are not', () => {
+    const [ions] = suggest(treeOf('positive', [noisy]), known).spectra;
+    const weak = ions.filter((ion) => ion.intensity < 1);
+    const left = weak.filter((ion) => ion.remark === 'noise');
+    for (const ion of left) expect(ion).toMatchObject({ formula: null, score: null });
+    expect(left.filter((ion) => ion.alternatives.length > 0).length).toBeGreaterThan(5);
+    expect(ions.filter((ion) => ion.intensity > 1).map((ion) => ion.formula)).toEqual([...COCAINE].reverse());
+  });
+
+  it('is not suspected where everything else is explained', () => {
+    const [all] = suggest(treeOf('positive', [noisy]), known).spectra;
+    const doubtful = all.find((ion) => ion.remark === 'noise' && ion.alternatives.length > 0)!;
+    const clean = spectrum({
+      ...{ path: [mz(COCAINE[0])], analyser: 'orbitrap' },
+      peaks: [...COCAINE.map((f, i) => [mz(f), 100 - 10 * i] as const), [doubtful.mz, 0.02]]
+    });
+    const [ions] = suggest(treeOf('positive', [clean]), known).spectra;
+    expect(ions.find((ion) => ion.mz === doubtful.mz)?.formula).toBe(doubtful.alternatives[0].formula);
+  });
+});
+
+describe('ion types', () => {
+  it('that give the same ion are told apart by how usual they are', () => {
+    const { candidates } = suggest(treeOf('positive', [cocaine()]), options());
+    expect(candidates[0]).toMatchObject({ formula: 'C17H21NO4', adduct: '[M+H]+' });
+    const same = candidates.filter((c) => c.ionFormula === 'C17H22NO4');
+    expect(same.length).toBeGreaterThan(1);
+    for (const other of same.slice(1)) expect(other.score).toBeLessThan(candidates[0].score);
+  });
+
+  it('are not weighed when one was named', () => {
+    const { candidates } = suggest(treeOf('positive', [cocaine()]), options({ adducts: ['[M+NH4]+'] }));
+    expect(candidates.every((c) => !('ion type' in c.terms))).toBe(true);
+  });
+});
