@@ -124,6 +124,7 @@ describe('the queue', () => {
       expect(job?.attempt).toBe(attempt);
       expect(await reap(database(), 500, () => false)).toBe(0);
       await new Promise((resolve) => setTimeout(resolve, 600));
+      expect(await reap(database(), 500, () => false, new Set([jobId]))).toBe(0);
       expect(await reap(database(), 500, () => false)).toBe(1);
     }
     expect(await jobOf(jobId)).toMatchObject({ state: 'failed', error: { code: 'interrupted' } });

@@ -95,7 +95,8 @@ export class JobRunner {
     if (performance.now() - this.lastBeat >= this.options.heartbeat) {
       // First the sign of life, then the search for the dead: after an outage no process takes its own jobs for dead.
       await beat(this.db, this.owner, [...this.running.keys()]);
-      await reap(this.db, SILENT_BEATS * this.options.heartbeat, (owner) => ownerIsDead(owner, living));
+      const silence = SILENT_BEATS * this.options.heartbeat;
+      await reap(this.db, silence, (owner) => ownerIsDead(owner, living), new Set(this.running.keys()));
       this.lastBeat = performance.now();
     }
     await this.notes();

@@ -103,14 +103,25 @@ export async function cancelsAsked(db: Database, owner: string): Promise<string[
   return rows.map((row) => row.id);
 }
 
-/** Running jobs whose process fell silent, or that `isDead` knows to be gone; locked for the caller's transaction. */
-export async function silentJobs(tx: Executor, silence: number, isDead: (owner: string) => boolean) {
+/**
+ * Running jobs whose process fell silent, or that `isDead` knows to be gone; locked for the caller's transaction.
+ * @param own jobs that the caller is at work on: their sign of life may be late, since it passes over a row that their
+ *   worker holds
+ */
+export async function silentJobs(
+  tx: Executor,
+  silence: number,
+  isDead: (owner: string) => boolean,
+  own: ReadonlySet<string>
+) {
   const rows = await tx
     .select({ job: jobs, silent: sql<number>`${jobs.heartbeatAt} < ${later(-silence)}`.mapWith(Number) })
     .from(jobs)
     .where(eq(jobs.state, 'running'))
     .for('update', { skipLocked: true });
-  return rows.filter(({ job, silent }) => silent || isDead(job.owner ?? '')).map(({ job }) => job);
+  return rows
+    .filter(({ job, silent }) => !own.has(job.id) && (silent || isDead(job.owner ?? '')))
+    .map(({ job }) => job);
 }
 
 /** When a job that was put back may be taken again. */

@@ -101,11 +101,20 @@ export async function cancelQueued(tx: Executor, jobId: string): Promise<boolean
   return Boolean(job);
 }
 
-/** Puts jobs of dead processes back, or fails them when they were interrupted too often. @returns how many there were */
-export function reap(db: Database, silence: number, isDead: (owner: string) => boolean): Promise<number> {
+/**
+ * Puts jobs of dead processes back, or fails them when they were interrupted too often.
+ * @param own jobs that the caller is at work on itself
+ * @returns how many there were
+ */
+export function reap(
+  db: Database,
+  silence: number,
+  isDead: (owner: string) => boolean,
+  own: ReadonlySet<string> = new Set()
+): Promise<number> {
   return db.transaction(
     async (tx) => {
-      const dead = await silentJobs(tx, silence, isDead);
+      const dead = await silentJobs(tx, silence, isDead, own);
       for (const job of dead) {
         if (job.cancelAsked) await end(tx, job, 'cancelled', CANCELLED);
         else if (job.attempts < job.maxAttempts) await putBack(tx, job, false);
