@@ -22,6 +22,9 @@ export async function openGate(databaseUrl: string): Promise<Gate> {
           sockets.add(socket);
           socket.on('error', () => undefined).on('close', () => sockets.delete(socket));
         }
+        // A process that was killed resets its connection: the database must learn of it, as it would without the gate.
+        client.once('close', () => upstream.destroy());
+        upstream.once('close', () => client.destroy());
         client.pipe(upstream).pipe(client);
       }).listen(port, '127.0.0.1', resolve);
     });
