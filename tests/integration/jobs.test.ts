@@ -160,7 +160,7 @@ describe('people and jobs', () => {
 
 describe('worker threads', () => {
   it('read a run with progress while the main thread stays free', async () => {
-    const { runId, jobId } = await addRun(database(), place, smallRun(2000));
+    const { runId, jobId } = await addRun(database(), place, smallRun(8000));
     const runner = newRunner();
     runner.start();
     const seen = await until(async () => {
@@ -171,7 +171,7 @@ describe('worker threads', () => {
     await state(jobId, 'done', 60_000);
     await runner.stop();
     expect((await runOf(runId)).state).toBe('ready');
-    expect(await database().$count(scans, eq(scans.runId, runId))).toBe(6000);
+    expect(await database().$count(scans, eq(scans.runId, runId))).toBe(24_000);
   });
 
   it('stop at once when the job is cancelled, and leave no scans', async () => {
