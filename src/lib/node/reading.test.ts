@@ -17,15 +17,15 @@ async function gunzipped(bytes: Uint8Array, size = 1000): Promise<string> {
 describe('base64', () => {
   it('decodes plain text as the reader itself does', () => {
     for (let length = 0; length < 50; length++) {
-      const text = Buffer.from(Buffer.from(Array.from({ length }, (_v, i) => (i * 89) & 255)).toString('base64'));
-      expect(new Uint8Array(base64(text) ?? [])).toEqual(new Uint8Array(decodeBase64(text)));
+      const text = Buffer.from(Array.from({ length }, (_v, i) => (i * 89) & 255)).toString('base64');
+      expect(new Uint8Array(base64(text) ?? [])).toEqual(decodeBase64(Buffer.from(text)));
     }
   });
 
   it.each(['AAA', 'AA-A', 'AA_A', 'AA A', 'A=AA', 'AAA\u0000', 'AAAA====', '====', 'AA!A', 'AAA=AAAA'])(
     'declines %j, which the reader judges by itself',
     (text) => {
-      expect(base64(Buffer.from(text))).toBeNull();
+      expect(base64(text)).toBeNull();
     }
   );
 });

@@ -2,7 +2,7 @@
 import { createHash } from 'node:crypto';
 import { createGunzip, inflateSync, type Gunzip } from 'node:zlib';
 import { CoreError } from '../core/errors';
-import type { Inflate, QuickBase64, ReadOptions, StreamingHash } from '../core/mzml';
+import type { ByteText, Inflate, QuickBase64, ReadOptions, StreamingHash } from '../core/mzml';
 
 const codeOf = (error: unknown) => (error instanceof Error && 'code' in error ? String(error.code) : '');
 
@@ -25,15 +25,16 @@ export const inflate: Inflate = (bytes, expectedLength, maxLength) => {
   }
 };
 
-const [PAD, MINUS, UNDERSCORE] = [61, 45, 95];
+/** Bytes as ISO 8859-1. */
+export const byteText: ByteText = (bytes) =>
+  Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength).toString('latin1');
 
 /** Base64 by Node, which passes over foreign letters and takes "-" and "_": what holds any of these is declined. */
 export const base64: QuickBase64 = (text) => {
-  const bytes = Buffer.from(text.buffer, text.byteOffset, text.byteLength);
-  const { length } = bytes;
-  if (length % 4 !== 0 || bytes.includes(MINUS) || bytes.includes(UNDERSCORE)) return null;
-  const padding = length === 0 || bytes[length - 1] !== PAD ? 0 : bytes[length - 2] === PAD ? 2 : 1;
-  const decoded = Buffer.from(bytes.toString('latin1'), 'base64');
+  const { length } = text;
+  if (length % 4 !== 0 || text.includes('-') || text.includes('_')) return null;
+  const padding = text.endsWith('==') ? 2 : text.endsWith('=') ? 1 : 0;
+  const decoded = Buffer.from(text, 'base64');
   return decoded.length === (length / 4) * 3 - padding ? decoded : null;
 };
 
@@ -104,8 +105,9 @@ export function sha1(): StreamingHash {
 }
 
 /** All of these, as the reader takes them. */
-export const nodeReading: Required<Pick<ReadOptions, 'base64' | 'inflate' | 'gunzip' | 'sha1'>> = {
+export const nodeReading: Required<Pick<ReadOptions, 'base64' | 'byteText' | 'inflate' | 'gunzip' | 'sha1'>> = {
   base64,
+  byteText,
   inflate,
   gunzip,
   sha1

@@ -5,6 +5,7 @@ import { COMPRESSIONS, CV, NUMBER_TYPES, UNSUPPORTED_COMPRESSIONS, type Compress
 import { decodeLinear, decodePic, decodeSlof } from './numpress';
 import type { ReadSettings } from './options';
 import type { Params } from './params';
+import type { BinaryText } from './record';
 
 export interface ArrayDescription {
   kind: 'mz' | 'intensity' | 'other';
@@ -60,12 +61,12 @@ function toDoubles(bytes: Uint8Array, type: NumberType): Float64Array {
 
 /**
  * Decodes one array.
- * @param text base64 text as bytes
+ * @param text base64
  * @param declared number of points the file declares; what inflates to far more than that is refused
  * @throws CoreError `bad-base64`, `bad-array`, `inflate-limit`, `limit` or `unsupported-compression`
  */
 export function decodeArray(
-  text: Uint8Array,
+  text: BinaryText,
   array: ArrayDescription,
   declared: number,
   settings: ReadSettings
@@ -84,7 +85,7 @@ export function decodeArray(
       `The spectrum declares ${declared} points, more than the ${settings.limits.arrayPoints} allowed`
     );
   }
-  let bytes = settings.base64(text) ?? decodeBase64(text);
+  let bytes = (text.text === null ? null : settings.base64(text.text)) ?? decodeBase64(text.bytes);
   if (bytes.length === 0) return new Float64Array(0);
   const { numpress, zlib } = array.compression;
   if (zlib) {

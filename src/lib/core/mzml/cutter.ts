@@ -1,10 +1,11 @@
 /** Cuts a stream of bytes into the head of the file and its spectra, without reading more than the tags. */
 import { CoreError } from '../errors';
 import { ByteWindow } from './byte-window';
-import type { ReadLimits, StreamingHash } from './options';
-import type { SpectrumRecord } from './record';
+import type { ByteText, ReadLimits, StreamingHash } from './options';
+import type { BinaryText, SpectrumRecord } from './record';
 import { QuickCutter } from './quick-cut';
 import { named, nextMarkup, type Markup } from './tags';
+import { byteText } from './window-text';
 
 export interface HeadPiece {
   kind: 'head';
@@ -19,7 +20,7 @@ export interface SpectrumPiece {
   /** the spectrum's XML without the text of its `binary` elements; the record taken from it where the form is common. */
   content: string | SpectrumRecord;
   /** base64 text of each `binary` element in order; valid until the next `push`. */
-  binaries: Uint8Array[];
+  binaries: BinaryText[];
 }
 
 /** A spectrum whose end tag is missing although the file goes on. */
@@ -74,7 +75,8 @@ export class Cutter {
   /** alternating: begin and end of each binary text, absolute. */
   private ranges: number[] = [];
   private openBinary = -1;
-  private readonly quick = new QuickCutter();
+  private readonly quick: QuickCutter;
+  private readonly common: boolean;
   /** the present spectrum may be of the common form. */
   private isQuick = false;
   private ended = false;
@@ -93,10 +95,12 @@ export class Cutter {
   constructor(
     private readonly limits: ReadLimits,
     hash: StreamingHash | null,
-    /** false: every spectrum goes through the XML parser. */
-    private readonly common = true
+    /** null: every spectrum goes through the XML parser. */
+    textOf: ByteText | null
   ) {
     this.hash = hash;
+    this.common = textOf !== null;
+    this.quick = new QuickCutter(textOf ?? byteText);
   }
 
   /** Takes the next bytes of the stream; call `next` until it returns null before pushing again. */
@@ -255,10 +259,10 @@ export class Cutter {
     const end = window.base + tag.end;
     let xml = '';
     let from = start;
-    const binaries: Uint8Array[] = [];
+    const binaries: BinaryText[] = [];
     for (let i = 0; i < ranges.length; i += 2) {
       xml += this.decoder.decode(window.slice(from, ranges[i]));
-      binaries.push(window.slice(ranges[i], ranges[i + 1]));
+      binaries.push({ bytes: window.slice(ranges[i], ranges[i + 1]), text: null });
       from = ranges[i + 1];
     }
     xml += this.decoder.decode(window.slice(from, end));

@@ -28,19 +28,41 @@ const ANALYSER_WORDS: ReadonlyMap<string, AnalyserKind> = new Map([
   ['SECTOR', 'sector']
 ]);
 
+const LONGEST_ANALYSER = 'SECTOR'.length;
 const LONGEST = 2000;
 const LEVEL = /\bms(\d{0,2})\b/i;
-const STAGE = /(\d+(?:\.\d+)?)((?:@[a-z]+\d*(?:\.\d+)?)+)/gi;
-const ACTIVATION = /@([a-z]+)(\d+(?:\.\d+)?)?/gi;
+const MZ_BEFORE = /\d+(?:\.\d+)?$/;
+/** Longer numbers are no m/z. */
+const LONGEST_MZ = 40;
+const ACTIVATION = /@([a-z]+)(\d+(?:\.\d+)?)?/iy;
 
-function readStage(mz: string, text: string): FilterStage {
+/** Reads the activations that begin at the `@` at `at`; null when there is none. */
+function readActivations(
+  text: string,
+  at: number
+): (Pick<FilterStage, 'activations' | 'energy'> & { end: number }) | null {
   const activations: string[] = [];
   let energy: number | null = null;
-  for (const [, name, written] of text.matchAll(ACTIVATION)) {
-    if (activations.length === 0 && written) energy = Number(written);
-    activations.push(name.toUpperCase());
+  let end = at;
+  ACTIVATION.lastIndex = at;
+  for (let found = ACTIVATION.exec(text); found; found = ACTIVATION.exec(text)) {
+    if (activations.length === 0 && found[2]) energy = Number(found[2]);
+    activations.push(found[1].toUpperCase());
+    end = ACTIVATION.lastIndex;
   }
-  return { mz: Number(mz), activations, energy };
+  return activations.length > 0 ? { activations, energy, end } : null;
+}
+
+/** Every `m/z@activation`, where one m/z may have several activations. */
+function readPath(text: string): FilterStage[] {
+  const path: FilterStage[] = [];
+  for (let at = text.indexOf('@'); at >= 0; at = text.indexOf('@', at)) {
+    const mz = MZ_BEFORE.exec(text.slice(Math.max(0, at - LONGEST_MZ), at));
+    const found = readActivations(text, at);
+    if (mz && found) path.push({ mz: Number(mz[0]), activations: found.activations, energy: found.energy });
+    at = found?.end ?? at + 1;
+  }
+  return path;
 }
 
 /** What the words tell: the analyser's name, the sign of polarity, and behind the sign `c` or `p`. */
@@ -48,10 +70,17 @@ function readWords(text: string): Pick<FilterString, 'analyser' | 'polarity' | '
   let analyser: AnalyserKind | null = null;
   let polarity: Polarity | null = null;
   let centroided: boolean | null = null;
-  for (const word of text.split(' ')) {
-    analyser ??= ANALYSER_WORDS.get(word) ?? null;
-    if (polarity === null && (word === '+' || word === '-')) polarity = word === '+' ? 'positive' : 'negative';
-    else if (polarity !== null && centroided === null && (word === 'c' || word === 'p')) centroided = word === 'c';
+  for (let from = 0; from < text.length;) {
+    const space = text.indexOf(' ', from);
+    const to = space < 0 ? text.length : space;
+    if (to - from === 1) {
+      const letter = text[from];
+      if (polarity === null && (letter === '+' || letter === '-')) polarity = letter === '+' ? 'positive' : 'negative';
+      else if (polarity !== null && (letter === 'c' || letter === 'p')) centroided ??= letter === 'c';
+    } else if (analyser === null && to - from <= LONGEST_ANALYSER) {
+      analyser = ANALYSER_WORDS.get(text.slice(from, to)) ?? null;
+    }
+    from = to + 1;
   }
   return { analyser, polarity, centroided };
 }
@@ -60,7 +89,5 @@ function readWords(text: string): Pick<FilterString, 'analyser' | 'polarity' | '
 export function parseFilterString(text: string): FilterString {
   const head = text.slice(0, LONGEST).replace(/[\t\r\n]/g, ' ');
   const level = LEVEL.exec(head);
-  const path: FilterStage[] = [];
-  if (head.includes('@')) for (const [, mz, activations] of head.matchAll(STAGE)) path.push(readStage(mz, activations));
-  return { ...readWords(head), level: level ? (level[1] ? Number(level[1]) : 1) : null, path };
+  return { ...readWords(head), level: level ? (level[1] ? Number(level[1]) : 1) : null, path: readPath(head) };
 }

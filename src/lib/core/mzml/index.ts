@@ -3,6 +3,7 @@ export { readMzml, readRun, type MzmlEvent, type RunStart, type RunSummary } fro
 export {
   DEFAULT_LIMITS,
   type Inflate,
+  type ByteText,
   type QuickBase64,
   type ReadLimits,
   type ReadOptions,

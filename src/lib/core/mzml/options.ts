@@ -46,9 +46,14 @@ export type Inflate = (bytes: Uint8Array, expectedLength: number, maxLength: num
  * Decodes base64 text that a platform knows how to decode fast. Returns null for everything but whole quartets of the
  * alphabet of RFC 4648, section 4, with its padding: the reader then decodes it by itself, or says what is wrong.
  */
-export type QuickBase64 = (text: Uint8Array) => Uint8Array | null;
+export type QuickBase64 = (text: string) => Uint8Array | null;
+
+/** Bytes as text with exactly one letter for each: ASCII as it is, others as any letter that is no printable ASCII. */
+export type ByteText = (bytes: Uint8Array) => string;
 
 export interface ReadOptions {
+  /** bytes as text for searching, as ISO 8859-1 for example; default: the reader's own. */
+  byteText?: ByteText;
   /** base64 of plainly written arrays; default: the reader's own. */
   base64?: QuickBase64;
   /** zlib of one array; default: pako. */

@@ -4,7 +4,7 @@ import type { PeakList } from '../model';
 import { decodeArray, describeArray } from './arrays';
 import type { ReadSettings } from './options';
 import { Params, type ParamGroups } from './params';
-import type { SpectrumRecord } from './record';
+import type { BinaryText, SpectrumRecord } from './record';
 import type { WarningCollector } from './warnings';
 
 export const NO_PEAKS: PeakList = { mz: new Float64Array(0), intensity: new Float64Array(0) };
@@ -33,12 +33,12 @@ function isWrongLength(stated: string | null, text: Uint8Array): boolean {
   return length !== letters;
 }
 
-const NO_TEXT = new Uint8Array(0);
+const NO_TEXT: BinaryText = { bytes: new Uint8Array(0), text: '' };
 
 /** Finds and decodes the m/z and intensity arrays; every other array is left alone. */
 export function readArrays(
   record: SpectrumRecord,
-  binaries: readonly Uint8Array[],
+  binaries: readonly BinaryText[],
   groups: ParamGroups,
   settings: ReadSettings
 ): ArraySet {
@@ -48,7 +48,7 @@ export function readArrays(
   for (const array of record.arrays) {
     const text = (array.hasBinary ? binaries[at++] : undefined) ?? NO_TEXT;
     set.count++;
-    set.wrongLength ||= isWrongLength(array.encodedLength, text);
+    set.wrongLength ||= isWrongLength(array.encodedLength, text.bytes);
     const description = describeArray(Params.of(array.params, groups));
     const kind = description.kind;
     if (kind === 'other' || set[kind] !== null) continue;
@@ -91,9 +91,12 @@ export function pairPeaks(set: ArraySet, id: string, declared: number, warnings:
 function clean(mz: Float64Array, intensity: Float64Array, id: string, warnings: WarningCollector): PeakList {
   let usable = true;
   let ordered = true;
+  let before = -Infinity;
   for (let i = 0; i < mz.length; i++) {
-    usable &&= isUsable(mz[i], intensity[i]);
-    ordered &&= i === 0 || mz[i] >= mz[i - 1];
+    const value = mz[i];
+    if (!isUsable(value, intensity[i])) usable = false;
+    if (value < before) ordered = false;
+    before = value;
   }
   let peaks: PeakList = { mz, intensity };
   if (!usable) {

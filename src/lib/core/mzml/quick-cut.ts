@@ -1,7 +1,8 @@
 /** Cuts and scans the spectra of the common form. */
 import type { ByteWindow } from './byte-window';
+import type { ByteText } from './options';
 import { quickRecord } from './quick-scan';
-import type { SpectrumRecord } from './record';
+import type { BinaryText, SpectrumRecord } from './record';
 import { Templates } from './template';
 import { WindowText } from './window-text';
 
@@ -13,16 +14,20 @@ const LARGEST = 2 << 20;
 
 export interface QuickSpectrum {
   record: SpectrumRecord;
-  binaries: Uint8Array[];
+  binaries: BinaryText[];
   /** absolute: behind the spectrum. */
   end: number;
 }
 
 export class QuickCutter {
-  private readonly view = new WindowText();
+  private readonly view: WindowText;
   private readonly templates = new Templates();
   /** the number of bytes from which it makes sense to look for the end of the present spectrum once more. */
   private enough = 0;
+
+  constructor(textOf: ByteText) {
+    this.view = new WindowText(textOf);
+  }
 
   /** Call at the beginning of each spectrum. */
   begin(): void {
@@ -61,9 +66,12 @@ export class QuickCutter {
 
   /** From indexes into the text to bytes and an absolute end. */
   private place(window: ByteWindow, ranges: readonly number[], end: number): Pick<QuickSpectrum, 'binaries' | 'end'> {
-    const { from } = this.view;
-    const binaries: Uint8Array[] = [];
-    for (let i = 0; i < ranges.length; i += 2) binaries.push(window.slice(from + ranges[i], from + ranges[i + 1]));
+    const { from, text } = this.view;
+    const binaries: BinaryText[] = [];
+    for (let i = 0; i < ranges.length; i += 2) {
+      const [begin, behind] = [ranges[i], ranges[i + 1]];
+      binaries.push({ bytes: window.slice(from + begin, from + behind), text: text.slice(begin, behind) });
+    }
     return { binaries, end: from + end };
   }
 }

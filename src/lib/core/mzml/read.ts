@@ -7,6 +7,7 @@ import { readSettings, type ReadOptions, type ReadSettings } from './options';
 import { uncompressed } from './source';
 import { readSpectrum } from './spectrum';
 import { WarningCollector } from './warnings';
+import { byteText } from './window-text';
 
 /** Facts known before the first scan. */
 export type RunStart = Pick<RunInfo, 'ionSource' | 'analysers' | 'instrument' | 'startTime'> & { version: string };
@@ -29,7 +30,7 @@ export type MzmlEvent =
   | { kind: 'end'; summary: RunSummary };
 
 /** Bytes looked at together: so many fit into the cache of a processor, and little memory is held. */
-const PORTION = 128 << 10;
+const PORTION = 64 << 10;
 
 class RunReader {
   readonly warnings = new WarningCollector();
@@ -208,7 +209,8 @@ export async function* readMzml(
 ): AsyncGenerator<MzmlEvent> {
   const settings = readSettings(options);
   const reader = new RunReader(settings);
-  const cutter = new Cutter(settings.limits, options.sha1?.() ?? null, options.quick ?? true);
+  const textOf = options.quick === false ? null : (options.byteText ?? byteText);
+  const cutter = new Cutter(settings.limits, options.sha1?.() ?? null, textOf);
   let taken = 0;
   const counted = (bytes: number) => {
     taken += bytes;

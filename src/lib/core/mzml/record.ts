@@ -24,6 +24,12 @@ export interface ArrayText {
   params: ParamSet;
 }
 
+/** Base64 text of one array: its bytes, and the same as text where that is at hand. Valid until more bytes are read. */
+export interface BinaryText {
+  bytes: Uint8Array;
+  text: string | null;
+}
+
 export interface SpectrumRecord {
   id: string | null;
   defaultArrayLength: string | null;

@@ -10,7 +10,7 @@ import { Params } from './params';
 import { NO_PEAKS, pairPeaks, readArrays } from './peaks';
 import { detached } from './detached';
 import { mergeFilter, readPrecursor } from './precursor';
-import { recordOf, type ParamSet, type SpectrumRecord } from './record';
+import { recordOf, type BinaryText, type ParamSet, type SpectrumRecord } from './record';
 import type { WarningCollector } from './warnings';
 import { attribute, parseXml } from './xml';
 
@@ -25,7 +25,7 @@ export interface SkippedSpectrum {
 export interface SpectrumInput {
   /** the XML without the text of its `binary` elements, or the record already taken from it. */
   content: string | SpectrumRecord;
-  binaries: readonly Uint8Array[];
+  binaries: readonly BinaryText[];
   /** position in the file, from 0. */
   index: number;
 }

@@ -5,6 +5,7 @@
  */
 import { CoreError } from '../errors';
 import { detached } from './detached';
+import { KNOWN_ACCESSIONS } from './cv';
 import { quickRecord } from './quick-scan';
 import type { Param } from './params';
 import type { ArrayText, ParamSet, PrecursorText, SpectrumRecord } from './record';
@@ -18,20 +19,27 @@ const WHOLE_MARKER = /^~value(\d+)~$/;
 const QUOTE = 34;
 const SPACE = 32;
 
-const REFERENCE = 2;
-/** 1 for the letters of a plainly written value, printable ASCII without `"`, `<` and `>`; 3 for `&`, which may stand for another. */
+const AMPERSAND = 38;
+const IS_PLAIN = 1;
+const IS_REFERENCE = 2;
+/** What letters a plainly written value may hold: printable ASCII without `"`, `<` and `>`; `&` may begin a reference. */
 const LETTERS = Uint8Array.from({ length: 256 }, (_value, code) => {
-  const letter = String.fromCharCode(code);
-  if (code < 32 || code >= 127 || '"<>'.includes(letter)) return 0;
-  return letter === '&' ? 1 | REFERENCE : 1;
+  if (code < 32 || code >= 127 || '"<>'.includes(String.fromCharCode(code))) return 0;
+  return code === AMPERSAND ? IS_REFERENCE : IS_PLAIN;
 });
 
-/** Index of the double quote that ends the value beginning at `at`, or -1 when the value is not plainly written. */
+/** Index behind the plain letters from `at` on. */
+function plainEnd(text: string, at: number): number {
+  let i = at;
+  while (LETTERS[text.charCodeAt(i)] === IS_PLAIN) i++;
+  return i;
+}
+
+/** Index of the double quote behind the letters from `at` on that a value may hold, or -1 where another letter stands. */
 function valueEnd(text: string, at: number): number {
   let i = at;
-  let code = text.charCodeAt(i);
-  while (LETTERS[code] > 0) code = text.charCodeAt(++i);
-  return code === QUOTE ? i : -1;
+  while (LETTERS[text.charCodeAt(i)] > 0) i++;
+  return text.charCodeAt(i) === QUOTE ? i : -1;
 }
 
 /** As `text.startsWith(part, at)`, but engines compare whole texts several times as fast. */
@@ -39,87 +47,93 @@ function isAt(text: string, part: string, at: number): boolean {
   return text.slice(at, at + part.length) === part;
 }
 
-/**
- * The value in [from, to) as the XML parser hands it out: without space at its ends, references replaced.
- * @throws CoreError `doctype` for an entity that mzML does not define
- */
-function valueOf(text: string, from: number, to: number): string {
+/** The value in [from, to) as the XML parser hands it out, without space at its ends. */
+function trimmed(text: string, from: number, to: number): string {
   const value = text.slice(from, to);
-  const isTrimmed = text.charCodeAt(from) !== SPACE && text.charCodeAt(to - 1) !== SPACE;
-  return decodeEntities(isTrimmed ? value : value.trim());
+  return text.charCodeAt(from) === SPACE || text.charCodeAt(to - 1) === SPACE ? value.trim() : value;
 }
 
 /** Values of the spectrum at hand, by number. */
 type Values = readonly string[];
 type Make<T> = (values: Values) => T;
 
-function markerOf(text: string | null): number | null {
-  const found = text === null ? null : WHOLE_MARKER.exec(text);
-  return found ? Number(found[1]) : null;
-}
+/** Makes the way to a record from a record that holds markers for values. */
+class RecordMaker {
+  /** numbers of the values that go into the record. */
+  readonly used = new Set<number>();
 
-function makeText(text: string | null): Make<string | null> {
-  const slot = markerOf(text);
-  return slot === null ? () => text : (values) => values[slot];
-}
+  record(written: SpectrumRecord): Make<SpectrumRecord> {
+    const [id, defaultArrayLength] = [this.text(written.id), this.text(written.defaultArrayLength)];
+    const params = this.set(written.params);
+    const { scan } = written;
+    const scanParams = scan && this.set(scan.params);
+    const precursors = written.precursors.map((precursor) => this.precursor(precursor));
+    const arrays = written.arrays.map((array) => this.array(array));
+    return (values) => ({
+      id: id(values),
+      defaultArrayLength: defaultArrayLength(values),
+      params: params(values),
+      scan: scan && scanParams && { configurationRef: scan.configurationRef, params: scanParams(values) },
+      precursors: precursors.map((make) => make(values)),
+      arrays: arrays.map((make) => make(values))
+    });
+  }
 
-function makeParam(param: Param): Make<Param> {
-  const slot = markerOf(param.value);
-  if (slot === null) return () => param;
-  const { accession, name, unit } = param;
-  return (values) => ({ accession, name, value: values[slot], unit });
-}
+  private slot(text: string | null): number | null {
+    const found = text === null ? null : WHOLE_MARKER.exec(text);
+    if (!found) return null;
+    this.used.add(Number(found[1]));
+    return Number(found[1]);
+  }
 
-/** Sets without any value are shared by all records. */
-function makeSet(set: ParamSet): Make<ParamSet> {
-  if (set.own.every((param) => markerOf(param.value) === null)) return () => set;
-  const params = set.own.map(makeParam);
-  return (values) => {
-    const own: Param[] = [];
-    for (const param of params) own.push(param(values));
-    return { refs: set.refs, own };
-  };
-}
+  private text(text: string | null): Make<string | null> {
+    const slot = this.slot(text);
+    return slot === null ? () => text : (values) => values[slot];
+  }
 
-function makePrecursor(written: PrecursorText): Make<PrecursorText> {
-  const spectrumRef = makeText(written.spectrumRef);
-  const [params, window] = [makeSet(written.params), makeSet(written.window)];
-  const [ion, activation] = [makeSet(written.ion), makeSet(written.activation)];
-  return (values) => ({
-    spectrumRef: spectrumRef(values),
-    params: params(values),
-    window: window(values),
-    ion: ion(values),
-    activation: activation(values)
-  });
-}
+  private param(param: Param): Make<Param> {
+    const { accession, name, unit } = param;
+    const isRead = accession === null || KNOWN_ACCESSIONS.has(accession);
+    const slot = isRead ? this.slot(param.value) : null;
+    if (slot !== null) return (values) => ({ accession, name, value: values[slot], unit });
+    // Nobody asks for the value of a term that the reader does not know.
+    const same = isRead ? param : { ...param, value: '' };
+    return () => same;
+  }
 
-function makeArray(written: ArrayText): Make<ArrayText> {
-  const [arrayLength, encodedLength] = [makeText(written.arrayLength), makeText(written.encodedLength)];
-  const params = makeSet(written.params);
-  return (values) => ({
-    arrayLength: arrayLength(values),
-    encodedLength: encodedLength(values),
-    hasBinary: written.hasBinary,
-    params: params(values)
-  });
-}
+  private set({ refs, own }: ParamSet): Make<ParamSet> {
+    const params = own.map((param) => this.param(param));
+    return (values) => {
+      const made: Param[] = [];
+      for (const param of params) made.push(param(values));
+      return { refs, own: made };
+    };
+  }
 
-function makeRecord(written: SpectrumRecord): Make<SpectrumRecord> {
-  const [id, defaultArrayLength] = [makeText(written.id), makeText(written.defaultArrayLength)];
-  const params = makeSet(written.params);
-  const { scan } = written;
-  const scanParams = scan && makeSet(scan.params);
-  const precursors = written.precursors.map(makePrecursor);
-  const arrays = written.arrays.map(makeArray);
-  return (values) => ({
-    id: id(values),
-    defaultArrayLength: defaultArrayLength(values),
-    params: params(values),
-    scan: scan && scanParams && { configurationRef: scan.configurationRef, params: scanParams(values) },
-    precursors: precursors.map((make) => make(values)),
-    arrays: arrays.map((make) => make(values))
-  });
+  private precursor(written: PrecursorText): Make<PrecursorText> {
+    const spectrumRef = this.text(written.spectrumRef);
+    const [params, window] = [this.set(written.params), this.set(written.window)];
+    const [ion, activation] = [this.set(written.ion), this.set(written.activation)];
+    return (values) => ({
+      spectrumRef: spectrumRef(values),
+      params: params(values),
+      window: window(values),
+      ion: ion(values),
+      activation: activation(values)
+    });
+  }
+
+  private array(written: ArrayText): Make<ArrayText> {
+    const { hasBinary } = written;
+    const [arrayLength, encodedLength] = [this.text(written.arrayLength), this.text(written.encodedLength)];
+    const params = this.set(written.params);
+    return (values) => ({
+      arrayLength: arrayLength(values),
+      encodedLength: encodedLength(values),
+      hasBinary,
+      params: params(values)
+    });
+  }
 }
 
 /** A spectrum that a template fits. */
@@ -137,6 +151,8 @@ export class Template {
     private readonly constants: readonly string[],
     /** whether each value is a base64 text. */
     private readonly isBinary: readonly boolean[],
+    /** whether each value goes into the record. */
+    private readonly isUsed: readonly boolean[],
     private readonly make: Make<SpectrumRecord>
   ) {}
 
@@ -177,7 +193,11 @@ export class Template {
     constants.push(text.slice(open));
     // What the scanner makes of the text with markers for values shows where each value belongs.
     const record = quickRecord(marked, 0, markedBinaries);
-    return record && new Template(constants, isBinary, makeRecord(record));
+    if (!record) return null;
+    const maker = new RecordMaker();
+    const make = maker.record(record);
+    const isUsed = isBinary.map((_value, k) => maker.used.has(k));
+    return new Template(constants, isBinary, isUsed, make);
   }
 
   /**
@@ -185,7 +205,7 @@ export class Template {
    * @throws CoreError `doctype` for an entity that mzML does not define
    */
   match(text: string, at: number): TemplateMatch | null {
-    const { constants, isBinary } = this;
+    const { constants, isBinary, isUsed } = this;
     const values: string[] = [];
     const binaries: number[] = [];
     let i = at;
@@ -198,9 +218,14 @@ export class Template {
         binaries.push(begin, i);
         values.push('');
       } else {
-        i = valueEnd(text, begin);
+        i = plainEnd(text, begin);
+        if (text.charCodeAt(i) === QUOTE) {
+          values.push(isUsed[k] ? trimmed(text, begin, i) : '');
+          continue;
+        }
+        i = valueEnd(text, i);
         if (i < 0) return null;
-        values.push(valueOf(text, begin, i));
+        values.push(decodeEntities(trimmed(text, begin, i)));
       }
     }
     const last = constants[constants.length - 1];

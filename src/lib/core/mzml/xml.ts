@@ -10,12 +10,16 @@ export interface XmlElement {
 
 const ENTITIES: Readonly<Record<string, string>> = { lt: '<', gt: '>', amp: '&', quot: '"', apos: "'" };
 
+/** Texts whose only entities are quotes, as many writers put into their titles. */
+const QUOTED = /^(?:[^&]|&quot;)*$/;
+
 /**
  * Replaces the five predefined entities and character references.
  * @throws CoreError `doctype` for any other entity, since only a DTD could define it.
  */
 export function decodeEntities(text: string): string {
   if (!text.includes('&')) return text;
+  if (QUOTED.test(text)) return text.replaceAll('&quot;', '"');
   return text.replace(/&(#x[0-9a-fA-F]{1,6}|#[0-9]{1,7}|[^;&\s]{0,40});?/g, (whole, name: string) => {
     if (name.startsWith('#')) {
       const code = name[1] === 'x' ? parseInt(name.slice(2), 16) : Number(name.slice(1));
