@@ -14,7 +14,10 @@ export class ByteWindow {
 
   /** Appends a piece and lets go of everything before the absolute offset `keepFrom`. */
   push(piece: Uint8Array, keepFrom: number): void {
-    const dropped = Math.min(keepFrom - this.base, this.filled);
+    const needless = Math.min(keepFrom - this.base, this.filled);
+    // Moving bytes costs time, so that many small pieces are only moved when much is gained.
+    const isWorthIt = needless * 2 >= this.filled || this.filled + piece.length > this.buffer.length;
+    const dropped = isWorthIt ? needless : 0;
     const kept = this.filled - dropped;
     if (kept + piece.length > this.buffer.length) {
       const larger = new Uint8Array(Math.max(this.buffer.length * 2, kept + piece.length));
@@ -27,6 +30,13 @@ export class ByteWindow {
     this.base += dropped;
     this.filled = kept + piece.length;
     this.bytes = this.buffer.subarray(0, this.filled);
+  }
+
+  /** Lets go of all bytes; the next ones pushed begin at the absolute offset `base`. */
+  restart(base: number): void {
+    this.base = base;
+    this.filled = 0;
+    this.bytes = this.buffer.subarray(0, 0);
   }
 
   /** A view of [from, to) by absolute offsets, valid until the next `push`. */

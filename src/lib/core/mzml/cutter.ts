@@ -57,8 +57,12 @@ const is = {
   checksum: named('fileChecksum')
 };
 
+/** How much longer an incomplete tag must have become to be looked at again, so that no byte is looked at too often. */
+const MORE = 1.5;
 /** Elements of the common form nest so deep below a spectrum. */
 const QUICK_DEPTH = 8;
+/** indexedmzML, mzML, run and spectrumList. */
+const DEPTH_OF_SPECTRA = 4;
 const COLON = 58;
 
 type State = 'root' | 'head' | 'body' | 'spectrum';
@@ -79,7 +83,11 @@ export class Cutter {
   private readonly common: boolean;
   /** the present spectrum may be of the common form. */
   private isQuick = false;
+  /** absolute: spectra that begin before are left to the XML parser. */
+  private quickFrom = 0;
   private ended = false;
+  /** absolute: a tag that is not complete is looked at again once the bytes reach up to here. */
+  private enough = 0;
   private plainRoot = false;
   private checksumFrom = -1;
   private readonly result: CutEnd = {
@@ -112,6 +120,23 @@ export class Cutter {
     this.quick.moved();
   }
 
+  /**
+   * Goes to the spectrum at an absolute offset; the bytes pushed next begin there. Call once the head has been handed out.
+   */
+  jump(byte: number): void {
+    this.window.restart(byte);
+    this.quick.moved();
+    this.state = 'body';
+    this.scan = this.start = byte;
+    this.enough = 0;
+    this.quickFrom = 0;
+    this.depth = DEPTH_OF_SPECTRA;
+    this.isQuick = false;
+    this.ended = false;
+    this.checksumFrom = -1;
+    this.hash = null;
+  }
+
   /** Call when no more bytes come, then `next` until it returns null, then `finish`. */
   end(): void {
     this.ended = true;
@@ -128,10 +153,13 @@ export class Cutter {
         if (piece !== 'unusual') return piece;
       }
       const { bytes, base } = this.window;
+      if (this.window.end < this.enough && !this.ended) return null;
       const found = nextMarkup(bytes, this.scan - base);
       if (typeof found === 'number') {
         this.scan = base + found;
+        this.enough = this.scan + (bytes.length - found) * MORE;
         this.checkSize();
+        this.checkTag();
         return null;
       }
       if (this.checksumFrom >= 0) this.takeChecksum(base + found.start);
@@ -147,6 +175,11 @@ export class Cutter {
     if (this.state === 'spectrum') this.result.openSpectrum = this.start;
     this.result.bytes = this.window.end;
     return this.result;
+  }
+
+  /** Of the encoding that the file declares; known once the head has been handed out. */
+  get textDecoder(): TextDecoder {
+    return this.decoder;
   }
 
   /** True while the head has not been handed out. */
@@ -208,7 +241,8 @@ export class Cutter {
     this.ranges = [];
     this.openBinary = -1;
     const prefixed = this.window.bytes[tag.nameFrom - 1] === COLON;
-    this.isQuick = this.common && tag.kind === 'start' && !prefixed && this.depth + QUICK_DEPTH <= this.limits.depth;
+    const isShallow = this.depth + QUICK_DEPTH <= this.limits.depth;
+    this.isQuick = this.common && tag.kind === 'start' && !prefixed && isShallow && this.start >= this.quickFrom;
     this.quick.begin();
   }
 
@@ -248,8 +282,10 @@ export class Cutter {
   private breakOff(tag: Markup): Piece {
     const byte = this.start;
     this.state = 'body';
+    // Nothing is looked through twice for the end of a spectrum, however many are begun and never ended.
+    this.quickFrom = this.quick.lookedUntil;
     this.scan = this.window.base + tag.start;
-    this.depth = Math.min(this.depth, 4);
+    this.depth = Math.min(this.depth, DEPTH_OF_SPECTRA);
     return { kind: 'broken', byte };
   }
 
@@ -289,8 +325,12 @@ export class Cutter {
         scan: null
       });
     }
+  }
+
+  /** Bounds a tag, comment or the like that is not complete. */
+  private checkTag(): void {
     const waiting = this.window.end - this.scan;
-    if (this.state === 'body' && waiting > this.limits.spectrumXmlBytes) {
+    if (waiting > this.limits.spectrumXmlBytes) {
       throw new CoreError('limit', `One tag is longer than ${this.limits.spectrumXmlBytes} bytes`, this.place(0));
     }
   }

@@ -11,6 +11,7 @@ export {
 } from './options';
 export { parseFilterString, type FilterStage, type FilterString } from './filter-string';
 export { centroid, isCentroided } from './centroid';
+export { RandomAccessRun, type IndexOrigin, type RandomAccessSource, type ScanEntry } from './random-access';
 export { WarningCollector } from './warnings';
 export { writeMzml, type RunToWrite, type WriteOptions } from './write';
 export type { ScanToWrite } from './write-spectrum';

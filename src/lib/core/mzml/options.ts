@@ -3,14 +3,16 @@ import { inflateWithPako } from './inflate';
 
 /** Bounds against hostile files; all are counts of bytes or elements of the uncompressed stream. */
 export interface ReadLimits {
-  /** everything before the first spectrum. */
+  /** everything before the first spectrum; the XML parser takes about a hundred times as much memory. */
   headBytes: number;
   /** one spectrum, its base64 text included. */
   spectrumBytes: number;
-  /** XML of one spectrum without its base64 text. */
+  /** XML of one spectrum without its base64 text, and the longest tag. */
   spectrumXmlBytes: number;
   /** nesting of elements. */
   depth: number;
+  /** spectra that cannot be read; more of them are no accident. */
+  failures: number;
   /** points of one array. */
   arrayPoints: number;
   /** inflated size of a whole gz file. */
@@ -20,10 +22,11 @@ export interface ReadLimits {
 }
 
 export const DEFAULT_LIMITS: ReadLimits = {
-  headBytes: 32 * 2 ** 20,
+  headBytes: 4 * 2 ** 20,
   spectrumBytes: 256 * 2 ** 20,
-  spectrumXmlBytes: 16 * 2 ** 20,
+  spectrumXmlBytes: 2 * 2 ** 20,
   depth: 60,
+  failures: 100_000,
   arrayPoints: 20_000_000,
   gzipBytes: 64 * 2 ** 30,
   gzipRatio: 200

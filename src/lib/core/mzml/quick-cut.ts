@@ -24,6 +24,8 @@ export class QuickCutter {
   private readonly templates = new Templates();
   /** the number of bytes from which it makes sense to look for the end of the present spectrum once more. */
   private enough = 0;
+  /** absolute: the end of a spectrum was looked for up to here. */
+  lookedUntil = 0;
 
   constructor(textOf: ByteText) {
     this.view = new WindowText(textOf);
@@ -52,8 +54,9 @@ export class QuickCutter {
     const known = this.templates.match(view.text, at);
     if (known) return { record: known.record, ...this.place(window, known.binaries, known.end) };
     const end = view.text.indexOf(END, at);
+    this.lookedUntil = end < 0 ? window.end : view.from + end;
     if (end < 0) {
-      this.enough = held * 1.5;
+      this.enough = Math.min(held * 1.5, LARGEST + 1);
       return last || held > LARGEST ? 'unusual' : 'more';
     }
     const ranges = findBinaries(view.text, at, end);

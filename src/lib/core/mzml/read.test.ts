@@ -89,7 +89,9 @@ describe('containers', () => {
   });
 
   it('stops a gzip bomb', async () => {
-    const bomb = gzipSync(Buffer.concat([Buffer.from('<mzML version="1.1.0">'), Buffer.alloc(30 << 20, 32)]));
+    const bomb = gzipSync(
+      Buffer.concat([Buffer.from('<mzML version="1.1.0"><run><spectrumList>'), Buffer.alloc(30 << 20, 32)])
+    );
     await expect(readBytes(bomb)).rejects.toMatchObject({ code: 'inflate-limit' });
   });
 
@@ -159,6 +161,33 @@ describe('refusals', () => {
     await expect(
       readBytes(bytesOf(mzmlText([{}], { head: ' '.repeat(500) })), { limits: { headBytes: 100 } }, 50)
     ).rejects.toMatchObject({ code: 'limit' });
+  });
+
+  it('reads a spectrum of several megabytes, in any pieces', async () => {
+    const mz = Array.from({ length: 300_000 }, (_v, i) => 100 + i / 300);
+    const file = bytesOf(mzmlText([{ mz }, {}]));
+    expect(file.length).toBeGreaterThan(6e6);
+    for (const size of [1 << 16, 1 << 20]) {
+      const { scans } = await readBytes(file, { centroid: false }, size);
+      expect(scans.map((scan) => scan.peakCount)).toEqual([300_000, 2]);
+    }
+  });
+
+  it('bounds the length of a tag and the number of broken spectra', async () => {
+    const long = mzmlText([{}]).replace('<binary>', `<binary a="${'x'.repeat(3e6)}"`);
+    await expect(readText(long)).rejects.toMatchObject({ code: 'limit' });
+    const broken = mzmlText([{}]).replace('<spectrum ', '<spectrum>'.repeat(200) + '<spectrum ');
+    await expect(readText(broken, { limits: { failures: 100 } })).rejects.toMatchObject({ code: 'limit' });
+    expect((await readText(broken)).scans).toHaveLength(1);
+  });
+
+  it('takes about as long for small pieces as for large ones, whatever is begun and never ended', async () => {
+    const cut = mzmlText([{}]).replace('<binary>', `<!-- ${'>'.repeat(1e6)}`);
+    const start = performance.now();
+    const { summary } = await readBytes(bytesOf(mzmlText([{}]).replace('</spectrumList>', cut)), {}, 500);
+    expect(summary.truncated).toBe(true);
+    // Looking at every byte again with every piece would take a thousand times as long.
+    expect(performance.now() - start).toBeLessThan(5000);
   });
 
   it('refuses an array that inflates far beyond its declared length', async () => {

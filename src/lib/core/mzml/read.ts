@@ -42,6 +42,7 @@ class RunReader {
   private seen = 0;
   private firstFailure: CoreError | null = null;
   private stop: CoreError | null = null;
+  private failures = 0;
   scanCount = 0;
 
   constructor(private readonly settings: ReadSettings) {}
@@ -87,6 +88,9 @@ class RunReader {
 
   fail(error: CoreError): void {
     this.firstFailure ??= error;
+    if (++this.failures > this.settings.limits.failures) {
+      throw new CoreError('limit', `More than ${this.settings.limits.failures} spectra cannot be read`, error.place);
+    }
     const where = error.place.byte === null ? '' : ` (first at byte ${error.place.byte})`;
     this.warnings.add(
       error.code,
