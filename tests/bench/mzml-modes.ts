@@ -1,14 +1,23 @@
 /** The ways of reading an mzML file that are compared: the least that any reader must do, ours, and a plain XML stream. */
 import { closeSync, openSync, readSync } from 'node:fs';
+import { open } from 'node:fs/promises';
 import { inflateSync } from 'node:zlib';
 import { SaxesParser } from 'saxes';
 import { nodeReading } from '../../src/lib/node/reading';
-import { readMzml } from '../../src/lib/core/mzml';
+import { RandomAccessRun, readMzml } from '../../src/lib/core/mzml';
+import { median } from './goal';
 
 export interface Counted {
   spectra: number;
-  peaks: number;
+  /** null where not all are read. */
+  peaks: number | null;
+  /** median wall time of opening one scan, ms. */
+  each?: number;
 }
+
+/** So many scans are opened, this many apart. */
+const OPENED = 300;
+const STRIDE = 7919;
 
 const PIECE = 4 << 20;
 
@@ -104,11 +113,33 @@ function xmlStream(path: string): Counted {
   return counted;
 }
 
+/** Opens the file by its index, then scans spread over it; `each` is the median wall time of one, ms. */
+async function byIndex(path: string, opened: number): Promise<Counted> {
+  const file = await open(path);
+  const read = async (offset: number, length: number) => {
+    const { buffer, bytesRead } = await file.read(Buffer.allocUnsafe(length), 0, length, offset);
+    return buffer.subarray(0, bytesRead);
+  };
+  const run = await RandomAccessRun.open({ size: (await file.stat()).size, read }, nodeReading);
+  if (run.origin !== 'file') throw new Error('The index of the file was not used');
+  const times: number[] = [];
+  for (let i = 0; i < opened; i++) {
+    const { id } = run.entries[(i * STRIDE) % run.entries.length];
+    const start = performance.now();
+    await run.scan(id);
+    times.push(performance.now() - start);
+  }
+  await file.close();
+  return { spectra: run.entries.length, peaks: null, each: median(times) };
+}
+
 export const MODES = {
   limit: inflateOnly,
   full: (path: string) => ours(path, true),
   metadata: (path: string) => ours(path, false),
-  'xml-stream': xmlStream
+  'xml-stream': xmlStream,
+  index: (path: string) => byIndex(path, 0),
+  'by-index': (path: string) => byIndex(path, OPENED)
 } as const satisfies Record<string, (path: string) => Counted | Promise<Counted>>;
 
 export type Mode = keyof typeof MODES;

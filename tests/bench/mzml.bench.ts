@@ -51,7 +51,7 @@ async function measure(program: string, path: string, modes: readonly string[], 
       const { stdout } = await run(process.execPath, [program, mode, path]);
       const taken = JSON.parse(stdout) as Taken;
       const limit = results.get('limit')?.[0] ?? taken;
-      if (taken.spectra !== limit.spectra || taken.peaks !== limit.peaks) {
+      if (taken.spectra !== limit.spectra || (taken.peaks ?? limit.peaks) !== limit.peaks) {
         throw new Error(
           `${mode} found ${taken.spectra} spectra and ${taken.peaks} peaks, the limit ${limit.spectra} and ${limit.peaks}`
         );
@@ -93,6 +93,10 @@ function goalsOf(size: string, results: Results): Goal[] {
   if (has('full')) atMost('full read, memory', highestRss(results, 'full'), 150, 'MB');
   if (has('metadata') && large) atMost('metadata only, CPU / limit', ratio(results, 'metadata', 'limit', 'cpu'), 1.25);
   if (has('two-workers')) atMost('two workers, memory', highestRss(results, 'two-workers'), 250, 'MB');
+  if (has('index')) atMost('index, CPU / limit', ratio(results, 'index', 'limit', 'cpu'), 0.15);
+  if (has('by-index')) {
+    atMost('one scan by index', median(of(results, 'by-index').map((taken) => taken.each ?? NaN)), 2, 'ms');
+  }
   if (has('full', 'xml-stream') && large) {
     const measured = ratio(results, 'xml-stream', 'full', 'cpu');
     goals.push({ what: `${size} XML stream, CPU / full read`, measured, limit: 2, bound: 'at least' });
