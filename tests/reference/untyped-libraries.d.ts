@@ -1,4 +1,4 @@
-/** The parts of two untyped npm packages that the reference tests compare with. */
+/** The parts of untyped npm packages that tests and benches compare with. */
 declare module 'mf-parser' {
   export class MF {
     constructor(formula: string);
@@ -11,4 +11,18 @@ declare module 'isotopic-distribution' {
     constructor(formula: string, options: { fwhm: number });
     getDistribution(): { array: { x: number; y: number }[] };
   }
+}
+
+declare module 'mf-finder' {
+  export function findMFs(
+    targetMass: number,
+    options: {
+      ranges: { mf: string; min: number; max: number }[];
+      precision: number;
+      allowNeutral: boolean;
+      limit: number;
+      maxIterations: number;
+      filter: { unsaturation?: { min: number; onlyInteger: boolean } };
+    }
+  ): Promise<{ mfs: unknown[] }>;
 }

@@ -1,7 +1,8 @@
-import { dbe, formatFormula, ionMz, nucleiMass } from '../chem/composition';
+import { formatFormula, ionMz, nucleiMass } from '../chem/composition';
+import { valenceOf } from '../chem/elements';
 import { CoreError } from '../errors';
 import { type Composition, type ElementRanges } from '../model';
-import { forEachFormula, formulaSpace, subformulaSpace, toComposition } from './solve';
+import { forEachFormula, formulaSpace, subformulaSpace, toComposition, type FormulaSpace } from './solve';
 
 /** A composition found within a mass window. */
 export interface FormulaHit {
@@ -29,6 +30,16 @@ const accept = (value: number, rules: EnumerationRules) =>
   value >= (rules.minDbe ?? -Infinity) &&
   (rules.parity === undefined || Number.isInteger(value) === (rules.parity === 'whole'));
 
+/** Rings plus double bonds of counts in the order of a space's symbols, without making a composition of them. */
+function dbeOf(space: FormulaSpace): (counts: ArrayLike<number>) => number {
+  const share = Float64Array.from(space.symbols, (symbol) => (valenceOf(symbol) - 2) / 2);
+  return (counts) => {
+    let sum = 1;
+    for (let i = 0; i < share.length; i++) sum += counts[i] * share[i];
+    return sum;
+  };
+}
+
 const byError = (a: FormulaHit, b: FormulaHit) =>
   Math.abs(a.errorPpm) - Math.abs(b.errorPpm) || (a.formula < b.formula ? -1 : 1);
 
@@ -43,11 +54,12 @@ export function enumerateFormulas(
   rules: EnumerationRules = {}
 ): FormulaHit[] {
   const space = formulaSpace(ranges);
+  const bondsOf = dbeOf(space);
   const hits: FormulaHit[] = [];
   forEachFormula(space, mass - window, mass + window, (counts, calculated) => {
-    const composition = toComposition(space, counts);
-    const bonds = dbe(composition);
+    const bonds = bondsOf(counts);
     if (!accept(bonds, rules)) return;
+    const composition = toComposition(space, counts);
     if (hits.length >= MAX_HITS) throw tooMany(mass);
     const formula = formatFormula(composition);
     hits.push({ composition, formula, calculated, errorPpm: ((mass - calculated) / calculated) * 1e6, dbe: bonds });
@@ -75,13 +87,14 @@ export function subformulas(
   rules: EnumerationRules = { minDbe: -0.5 }
 ): FormulaHit[] {
   const space = subformulaSpace(whole);
+  const bondsOf = dbeOf(space);
   const hits: FormulaHit[] = [];
   const z = Math.abs(charge);
   const target = nucleiMass(mz, charge);
   forEachFormula(space, target - window * z, target + window * z, (counts) => {
-    const composition = toComposition(space, counts);
-    const bonds = dbe(composition);
+    const bonds = bondsOf(counts);
     if (!accept(bonds, rules)) return;
+    const composition = toComposition(space, counts);
     const calculated = ionMz(composition, charge);
     const formula = formatFormula(composition);
     hits.push({ composition, formula, calculated, errorPpm: ((mz - calculated) / calculated) * 1e6, dbe: bonds });

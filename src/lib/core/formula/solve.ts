@@ -39,6 +39,8 @@ export function toComposition(space: FormulaSpace, counts: ArrayLike<number>): C
   return composition;
 }
 
+/** Multiplying by a reciprocal may fall short of a whole number by this much. */
+const ROUNDING = 1e-9;
 /** A window edge may fall on a formula exactly; rounding must not lose it (u). */
 const EDGE = 1e-9;
 
@@ -64,16 +66,24 @@ export function forEachFormula(
   const lowest = low - EDGE;
   const highest = high + EDGE;
 
+  const perDefect = 1 / defect;
+  const [minC, minH, maxC, maxH] = [min[0], min[1], max[0], max[1]];
+  const leastK = 12 * minC + minH;
+  const mostDefect = defect * maxH;
+  const last = masses.length - 1;
+
   const solveCarbonHydrogen = (mass: number) => {
     const lo = lowest - mass;
     const hi = highest - mass;
-    const firstK = Math.max(12 * min[0] + min[1], Math.ceil(lo - defect * max[1]));
-    const lastK = Math.floor(hi);
-    for (let k = firstK; k <= lastK; k++) {
-      const hLow = Math.max(min[1], Math.ceil((lo - k) / defect), k - 12 * max[0]);
-      const hHigh = Math.min(max[1], Math.floor((hi - k) / defect), k - 12 * min[0]);
+    for (let k = Math.max(leastK, Math.ceil(lo - mostDefect)); k <= hi; k++) {
+      // For usual windows at most one h fits, and mostly none: that is found out before anything else.
+      let h = Math.ceil((lo - k) * perDefect - ROUNDING);
+      let hHigh = Math.floor((hi - k) * perDefect + ROUNDING);
+      if (h > hHigh) continue;
+      h = Math.max(h, minH, k - 12 * maxC);
+      hHigh = Math.min(hHigh, maxH, k - 12 * minC);
       // H ≡ K (mod 12), since C must be whole
-      let h = hLow + ((((k - hLow) % 12) + 12) % 12);
+      h += (((k - h) % 12) + 12) % 12;
       for (; h <= hHigh; h += 12) {
         counts[0] = (k - h) / 12;
         counts[1] = h;
@@ -83,15 +93,16 @@ export function forEachFormula(
   };
 
   const descend = (i: number, mass: number) => {
-    if (i === masses.length) return solveCarbonHydrogen(mass);
     const unit = masses[i];
     const start = Math.max(min[i], Math.ceil((lowest - mass - most[i + 1]) / unit));
     const end = Math.min(max[i], Math.floor((highest - mass) / unit));
     for (let n = start; n <= end; n++) {
       counts[i] = n;
-      descend(i + 1, mass + n * unit);
+      if (i === last) solveCarbonHydrogen(mass + n * unit);
+      else descend(i + 1, mass + n * unit);
     }
     counts[i] = 0;
   };
-  descend(2, 0);
+  if (last < 2) solveCarbonHydrogen(0);
+  else descend(2, 0);
 }
