@@ -4,43 +4,14 @@
  * same round, and the median of the rounds counts. The files are made first; `--folder` keeps them for the next time.
  */
 import { execFile } from 'node:child_process';
-import { existsSync, mkdirSync, mkdtempSync, rmSync, statSync } from 'node:fs';
-import { tmpdir } from 'node:os';
-import { join, resolve } from 'node:path';
 import { promisify } from 'node:util';
-import { build } from 'esbuild';
 import { median, option, type Bench, type Goal } from './goal';
-import { writeLargeFile } from './mzml-file';
+import { bundleProcess, bytesOf, fileOf, openFolder } from './mzml-files';
 import { MODES } from './mzml-modes';
 import type { Taken } from './mzml-process';
 
-const root = resolve(import.meta.dirname, '../..');
 const run = promisify(execFile);
 const ALL_MODES = [...Object.keys(MODES), 'two-workers'];
-const UNITS: Readonly<Record<string, number>> = { MB: 1e6, GB: 1e9 };
-
-function bytesOf(size: string): number {
-  const [, number, unit] = /^(\d+)(MB|GB)$/.exec(size) ?? [];
-  if (number === undefined) throw new RangeError(`"${size}" is no size such as 200MB or 1GB`);
-  return Number(number) * UNITS[unit];
-}
-
-/** The program of one mode, bundled, so that no compiler takes memory in the measured process. */
-async function bundleProcess(folder: string): Promise<string> {
-  const outfile = join(folder, 'mzml-process.mjs');
-  await build({
-    entryPoints: [join(root, 'tests/bench/mzml-process.ts')],
-    outfile,
-    alias: { $lib: join(root, 'src/lib') },
-    bundle: true,
-    platform: 'node',
-    format: 'esm',
-    target: 'node20',
-    banner: { js: "import { createRequire } from 'node:module'; const require = createRequire(import.meta.url);" }
-  });
-  return outfile;
-}
-
 type Results = Map<string, Taken[]>;
 
 /** Runs all modes in turn, `rounds` times. @throws Error when two modes do not find the same spectra and peaks */
@@ -102,24 +73,6 @@ function goalsOf(size: string, results: Results): Goal[] {
     goals.push({ what: `${size} XML stream, CPU / full read`, measured, limit: 2, bound: 'at least' });
   }
   return goals;
-}
-
-/** A fresh folder, removed at the end, or the one that was named. */
-function openFolder(args: readonly string[]): { folder: string; close: () => void } {
-  const named = option(args, 'folder', '');
-  if (named) {
-    mkdirSync(named, { recursive: true });
-    return { folder: resolve(named), close: () => undefined };
-  }
-  const folder = mkdtempSync(join(tmpdir(), 'rivenmark-bench-'));
-  return { folder, close: () => rmSync(folder, { recursive: true, force: true }) };
-}
-
-function fileOf(folder: string, size: string): string {
-  const path = join(folder, `made-${size}.mzML`);
-  const isThere = existsSync(path) && statSync(path).size > bytesOf(size) * 0.95;
-  if (!isThere) writeLargeFile(path, bytesOf(size));
-  return path;
 }
 
 export const bench: Bench = {

@@ -1,4 +1,4 @@
-import { and, eq } from 'drizzle-orm';
+import { and, eq, getTableColumns, sql, type SQL } from 'drizzle-orm';
 import type { Readable } from 'node:stream';
 import { CoreError } from '$lib/core/errors';
 import { readMzml, type ReadOptions, type RunSummary } from '$lib/core/mzml';
@@ -37,26 +37,62 @@ function scanRow(runId: string, scan: Scan): ScanRow {
   };
 }
 
-/** Collects rows and writes them in batches, each in a transaction of its own that the job's claim guards. */
+const columns = getTableColumns(scans);
+const fields = Object.keys(columns) as (keyof typeof columns & keyof ScanRow)[];
+const names = sql.join(
+  fields.map((field) => sql.identifier(columns[field].name)),
+  sql`, `
+);
+
+/**
+ * Inserts rows as one parameter, a list of lists that the driver writes out: with a parameter for each of the thousands of
+ * cells, building the statement takes longer than reading the scans.
+ */
+function insertion(rows: readonly ScanRow[]): SQL {
+  const cells = rows.map((row) =>
+    fields.map((field) => (row[field] === undefined ? null : columns[field].mapToDriverValue(row[field])))
+  );
+  return sql`insert ignore into ${scans} (${names}) values ${sql.param(cells)}`;
+}
+
+/**
+ * Collects rows and writes them in batches, each in a transaction of its own that the job's claim guards. The next batch is
+ * read while the database takes the last one.
+ */
 class ScanWriter {
   private rows: ScanRow[] = [];
   private bytes = 0;
+  private writing: Promise<unknown> = Promise.resolve();
 
   constructor(private readonly context: JobContext) {}
 
   async add(row: ScanRow): Promise<void> {
     this.rows.push(row);
     this.bytes += row.peaks.length;
-    if (this.rows.length >= BATCH_ROWS || this.bytes >= BATCH_BYTES) await this.flush();
+    if (this.rows.length >= BATCH_ROWS || this.bytes >= BATCH_BYTES) await this.next();
   }
 
+  /** Ends when everything is written. @throws what a batch met, at the latest here */
   async flush(): Promise<void> {
+    await this.next();
+    await this.writing;
+  }
+
+  /** Ends when nothing is under way any more, whatever became of it. */
+  async stop(): Promise<void> {
+    await Promise.allSettled([this.writing]);
+  }
+
+  private async next(): Promise<void> {
     const rows = this.rows;
     this.rows = [];
     this.bytes = 0;
+    await this.writing;
     if (!rows.length) return;
     // A commit whose answer was lost is done again: the same row twice is then no error.
-    await this.context.transact((tx) => tx.insert(scans).ignore().values(rows));
+    this.writing = this.context.transact((tx) => tx.execute(insertion(rows)));
+    // Whoever waits for it next learns of a failure; until then it is no unhandled one.
+    this.writing.catch(() => undefined);
   }
 }
 
@@ -125,16 +161,20 @@ export async function readRunJob(context: JobContext) {
       what: `Reading: ${sizeText(bytes)} of ${sizeText(run.bytes)}, ${count} scans`
     });
   const options: ReadOptions = { ...nodeReading, onProgress, isCancelled: context.isCancelled };
-  for await (const event of readMzml(watched(await store.open(run.storageKey)), options)) {
-    if (event.kind === 'scan') {
-      const { peaks, ...header } = event.scan;
-      memory.keep(headers.length, header.level, peaks);
-      headers.push(header);
-      await writer.add(scanRow(run.id, event.scan));
-    } else if (event.kind === 'end') {
-      await writer.flush();
-      return finish(context, run, headers, memory, event.summary);
+  try {
+    for await (const event of readMzml(watched(await store.open(run.storageKey)), options)) {
+      if (event.kind === 'scan') {
+        const { peaks, ...header } = event.scan;
+        memory.keep(headers.length, header.level, peaks);
+        headers.push(header);
+        await writer.add(scanRow(run.id, event.scan));
+      } else if (event.kind === 'end') {
+        await writer.flush();
+        return await finish(context, run, headers, memory, event.summary);
+      }
     }
+  } finally {
+    await writer.stop();
   }
   throw new CoreError('truncated', 'The reader ended without a summary');
 }
