@@ -1,6 +1,7 @@
 /** Cuts a stream of bytes into the head of the file and its spectra, without reading more than the tags. */
 import { CoreError } from '../errors';
 import { ByteWindow } from './byte-window';
+import { IndexCheck } from './index-check';
 import type { ByteText, ReadLimits, StreamingHash } from './options';
 import type { BinaryText, SpectrumRecord } from './record';
 import { QuickCutter } from './quick-cut';
@@ -42,6 +43,9 @@ export interface CutEnd {
   chromatograms: number;
   declaredChecksum: string | null;
   computedChecksum: string | null;
+  /** offsets of spectra in the index, and how many of them lead to no spectrum. */
+  statedOffsets: number;
+  wrongOffsets: number;
   bytes: number;
 }
 
@@ -54,6 +58,8 @@ const is = {
   chromatogramList: named('chromatogramList'),
   run: named('run'),
   binary: named('binary'),
+  index: named('index'),
+  offset: named('offset'),
   checksum: named('fileChecksum')
 };
 
@@ -61,6 +67,8 @@ const is = {
 const MORE = 1.5;
 /** Elements of the common form nest so deep below a spectrum. */
 const QUICK_DEPTH = 8;
+/** Bytes of a checksum or an offset with white space. */
+const LONGEST_AWAITED = 1000;
 /** indexedmzML, mzML, run and spectrumList. */
 const DEPTH_OF_SPECTRA = 4;
 const COLON = 58;
@@ -89,7 +97,9 @@ export class Cutter {
   /** absolute: a tag that is not complete is looked at again once the bytes reach up to here. */
   private enough = 0;
   private plainRoot = false;
-  private checksumFrom = -1;
+  /** absolute: begin of a short text, up to the next markup, and who wants it; null when there is none. */
+  private awaited: { from: number; take: (text: string) => void } | null = null;
+  private readonly indexCheck = new IndexCheck();
   private readonly result: CutEnd = {
     closed: false,
     mzmlClosed: false,
@@ -97,6 +107,8 @@ export class Cutter {
     chromatograms: 0,
     declaredChecksum: null,
     computedChecksum: null,
+    statedOffsets: 0,
+    wrongOffsets: 0,
     bytes: 0
   };
 
@@ -115,7 +127,7 @@ export class Cutter {
   push(piece: Uint8Array): void {
     this.hashTo(this.scan);
     const begun = this.state === 'body' ? this.scan : this.start;
-    const keep = this.checksumFrom < 0 ? begun : Math.min(begun, this.checksumFrom);
+    const keep = Math.min(begun, this.awaited?.from ?? begun);
     this.window.push(piece, Math.min(this.scan, keep));
     this.quick.moved();
   }
@@ -133,7 +145,7 @@ export class Cutter {
     this.depth = DEPTH_OF_SPECTRA;
     this.isQuick = false;
     this.ended = false;
-    this.checksumFrom = -1;
+    this.awaited = null;
     this.hash = null;
   }
 
@@ -162,7 +174,7 @@ export class Cutter {
         this.checkTag();
         return null;
       }
-      if (this.checksumFrom >= 0) this.takeChecksum(base + found.start);
+      if (this.awaited) this.takeAwaited(base + found.start);
       this.scan = base + found.end;
       const piece = found.kind === 'other' ? null : this.take(bytes, found);
       if (piece) return piece;
@@ -174,6 +186,8 @@ export class Cutter {
     if (this.state === 'root') throw this.notMzml();
     if (this.state === 'spectrum') this.result.openSpectrum = this.start;
     this.result.bytes = this.window.end;
+    this.result.statedOffsets = this.indexCheck.stated;
+    this.result.wrongOffsets = this.indexCheck.wrong;
     return this.result;
   }
 
@@ -230,7 +244,13 @@ export class Cutter {
       this.hashTo(end);
       this.result.computedChecksum = this.hash?.hex() ?? null;
       this.hash = null;
-      this.checksumFrom = end;
+      this.await(end, (text) => {
+        this.result.declaredChecksum = text.trim().slice(0, 64).toLowerCase();
+      });
+    } else if (is.index(bytes, tag)) {
+      this.indexCheck.index(this.decoder.decode(bytes.subarray(tag.start, tag.end)));
+    } else if (is.offset(bytes, tag) && tag.kind === 'start') {
+      this.await(this.window.base + tag.end, (text) => this.indexCheck.offset(text));
     }
     return null;
   }
@@ -238,6 +258,7 @@ export class Cutter {
   private beginSpectrum(tag: Markup): void {
     this.state = 'spectrum';
     this.start = this.window.base + tag.start;
+    this.indexCheck.spectrum(this.start);
     this.ranges = [];
     this.openBinary = -1;
     const prefixed = this.window.bytes[tag.nameFrom - 1] === COLON;
@@ -335,10 +356,14 @@ export class Cutter {
     }
   }
 
-  private takeChecksum(end: number): void {
-    const text = this.decoder.decode(this.window.slice(this.checksumFrom, end)).trim();
-    this.result.declaredChecksum = text.slice(0, 64).toLowerCase();
-    this.checksumFrom = -1;
+  private await(from: number, take: (text: string) => void): void {
+    this.awaited = { from, take };
+  }
+
+  private takeAwaited(end: number): void {
+    const { awaited } = this;
+    this.awaited = null;
+    awaited?.take(this.decoder.decode(this.window.slice(awaited.from, Math.min(end, awaited.from + LONGEST_AWAITED))));
   }
 
   private hashTo(end: number): void {

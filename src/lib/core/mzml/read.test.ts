@@ -122,6 +122,18 @@ describe('containers', () => {
     expect(scans[0].id).toBe('a>b');
   });
 
+  it('warns of an index that leads nowhere and reads all the same', async () => {
+    const file = Buffer.from(indexedFile()).toString('latin1');
+    const { scans, summary } = await readText(file.replace(/(<offset idRef="scan=2">)(\d+)/, '$17'));
+    expect(scans).toHaveLength(2);
+    const [warning] = summary.warnings.filter(({ code }) => code === 'wrong-index');
+    expect(warning.message).toMatch(/for 1 of its 2 entries/);
+    for (const size of [1, 13, 500]) {
+      const right = await readBytes(indexedFile(), {}, size);
+      expect(codes(right.summary.warnings)).not.toContain('wrong-index');
+    }
+  });
+
   it('warns of a wrong checksum and reads all the same', async () => {
     const text = new TextDecoder().decode(indexedFile()).replace('id="run"', 'id="ran"');
     const { scans, summary } = await readText(text, { sha1 });

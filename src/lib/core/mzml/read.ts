@@ -131,6 +131,7 @@ class RunReader {
     }
     if (this.scanCount === 0) throw this.nothingRead(end);
     if (!end.closed) this.warnTruncated(end);
+    if (end.wrongOffsets > 0) this.warnWrongIndex(end);
     const checksum = this.checksum(end);
     return {
       info: {
@@ -147,6 +148,13 @@ class RunReader {
       bytes: end.bytes,
       checksum
     };
+  }
+
+  private warnWrongIndex({ wrongOffsets, statedOffsets }: CutEnd): void {
+    this.warnings.add(
+      'wrong-index',
+      `The index at the end of the file leads to no spectrum for ${wrongOffsets} of its ${statedOffsets} entries: the file was changed after it was written. The index was not used and no scan is lost`
+    );
   }
 
   private warnTruncated(end: CutEnd): void {
