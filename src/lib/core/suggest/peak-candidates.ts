@@ -79,7 +79,17 @@ export function peakCandidates(
     found(space, 0, false);
     if (water) found(space, ions.waterMass, true);
   }
-  return applyClaims(ions, peak, list);
+  return applyClaims(ions, peak, withChance(list));
+}
+
+/**
+ * A whole with many sub-formulas explains any m/z: an explanation that is one of n says less, by log n if the ions of
+ * a spectrum were independent, by a part of it as they are not (the number of competing formulas as the null model).
+ */
+function withChance(list: PeakCandidate[]): PeakCandidate[] {
+  if (list.length < 2) return list;
+  const chance = -WEIGHTS.chance * Math.log(list.length);
+  return list.map((c) => ({ ...c, terms: { ...c.terms, 'chance match': chance }, score: c.score + chance }));
 }
 
 function judge(peak: PeakTarget, ion: IonFormula, charge: number, mz: number, water: boolean): PeakCandidate {

@@ -14,6 +14,8 @@ export const WEIGHTS = {
   noiseExponent: 0.6,
   /** relative intensity at which noise ends to be certain. */
   noiseCutOff: 0.002,
+  /** part of the log number of sub-formulas in an ion's window by which its explanation is worth less. */
+  chance: 0.5,
   /** losses of specifications, of records, and of common practice. */
   lossListed: 2,
   lossSeen: 1.5,
