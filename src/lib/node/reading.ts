@@ -29,13 +29,18 @@ export const inflate: Inflate = (bytes, expectedLength, maxLength) => {
 export const byteText: ByteText = (bytes) =>
   Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength).toString('latin1');
 
+/** Taken for every array that fits: an allocation for each costs more than the decoding. */
+const scratch = Buffer.allocUnsafeSlow(1 << 20);
+
 /** Base64 by Node, which passes over foreign letters and takes "-" and "_": what holds any of these is declined. */
 export const base64: QuickBase64 = (text) => {
   const { length } = text;
   if (length % 4 !== 0 || text.includes('-') || text.includes('_')) return null;
   const padding = text.endsWith('==') ? 2 : text.endsWith('=') ? 1 : 0;
+  const size = (length / 4) * 3 - padding;
+  if (size <= scratch.length) return scratch.write(text, 'base64') === size ? scratch.subarray(0, size) : null;
   const decoded = Buffer.from(text, 'base64');
-  return decoded.length === (length / 4) * 3 - padding ? decoded : null;
+  return decoded.length === size ? decoded : null;
 };
 
 /** So much is handed to gunzip at once; what comes out, at most a thousand times as much, is held until it is taken. */

@@ -85,13 +85,16 @@ export function decodeArray(
       `The spectrum declares ${declared} points, more than the ${settings.limits.arrayPoints} allowed`
     );
   }
-  let bytes = (text.text === null ? null : settings.base64(text.text)) ?? decodeBase64(text.bytes);
+  const lent = text.text === null ? null : settings.base64(text.text);
+  let bytes = lent ?? decodeBase64(text.bytes);
   if (bytes.length === 0) return new Float64Array(0);
   const { numpress, zlib } = array.compression;
   if (zlib) {
     const size = numpress ? 5 : BYTES[array.type ?? 'f64'];
     const expected = declared * size + (numpress ? 16 : 0);
     bytes = settings.inflate(bytes, expected, declared * 8 + 65_536);
+  } else if (lent) {
+    bytes = new Uint8Array(lent);
   }
   if (numpress === 'linear') return decodeLinear(bytes);
   if (numpress === 'pic') return decodePic(bytes);

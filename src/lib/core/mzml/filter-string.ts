@@ -30,7 +30,10 @@ const ANALYSER_WORDS: ReadonlyMap<string, AnalyserKind> = new Map([
 
 const LONGEST_ANALYSER = 'SECTOR'.length;
 const LONGEST = 2000;
-const LEVEL = /\bms(\d{0,2})\b/i;
+const LEVEL = /ms(\d{0,2})\b/iy;
+const SPACE = 32;
+const LOWER = 32;
+const M = 109;
 const MZ_BEFORE = /\d+(?:\.\d+)?$/;
 /** Longer numbers are no m/z. */
 const LONGEST_MZ = 40;
@@ -65,29 +68,46 @@ function readPath(text: string): FilterStage[] {
   return path;
 }
 
-/** What the words tell: the analyser's name, the sign of polarity, and behind the sign `c` or `p`. */
-function readWords(text: string): Pick<FilterString, 'analyser' | 'polarity' | 'centroided'> {
-  let analyser: AnalyserKind | null = null;
-  let polarity: Polarity | null = null;
-  let centroided: boolean | null = null;
-  for (let from = 0; from < text.length;) {
-    const space = text.indexOf(' ', from);
-    const to = space < 0 ? text.length : space;
-    if (to - from === 1) {
-      const letter = text[from];
-      if (polarity === null && (letter === '+' || letter === '-')) polarity = letter === '+' ? 'positive' : 'negative';
-      else if (polarity !== null && (letter === 'c' || letter === 'p')) centroided ??= letter === 'c';
-    } else if (analyser === null && to - from <= LONGEST_ANALYSER) {
-      analyser = ANALYSER_WORDS.get(text.slice(from, to)) ?? null;
+type Words = Pick<FilterString, 'analyser' | 'polarity' | 'centroided' | 'level'>;
+
+const isWordLetter = (code: number) =>
+  (code >= 48 && code <= 57) || (code >= 65 && code <= 90) || code === 95 || (code >= 97 && code <= 122);
+
+/** The stage where `ms`, `ms2` and the like begin at `at`; null where they do not. */
+function levelAt(text: string, at: number): number | null {
+  LEVEL.lastIndex = at;
+  const found = LEVEL.exec(text);
+  return found && (found[1] ? Number(found[1]) : 1);
+}
+
+/** What the words tell: the analyser's name, the sign of polarity, behind the sign `c` or `p`, and the stage. */
+function readWords(text: string): Words {
+  const words: Words = { analyser: null, polarity: null, centroided: null, level: null };
+  let from = 0;
+  let before = SPACE;
+  for (let i = 0; i <= text.length; i++) {
+    const code = i < text.length ? text.charCodeAt(i) : SPACE;
+    if ((code | LOWER) === M && words.level === null && !isWordLetter(before)) words.level = levelAt(text, i);
+    before = code;
+    if (code > SPACE) continue;
+    if (i - from === 1) takeLetter(text[from], words);
+    else if (words.analyser === null && i - from <= LONGEST_ANALYSER) {
+      words.analyser = ANALYSER_WORDS.get(text.slice(from, i)) ?? null;
     }
-    from = to + 1;
+    from = i + 1;
   }
-  return { analyser, polarity, centroided };
+  return words;
+}
+
+function takeLetter(letter: string, words: Words): void {
+  if (words.polarity === null) {
+    if (letter === '+') words.polarity = 'positive';
+    else if (letter === '-') words.polarity = 'negative';
+  } else if (letter === 'c' || letter === 'p') words.centroided ??= letter === 'c';
 }
 
 /** Reads a filter string; facts it does not hold are null. FTMS does not tell an orbitrap from an ICR cell: orbitrap. */
 export function parseFilterString(text: string): FilterString {
-  const head = text.slice(0, LONGEST).replace(/[\t\r\n]/g, ' ');
-  const level = LEVEL.exec(head);
-  return { ...readWords(head), level: level ? (level[1] ? Number(level[1]) : 1) : null, path: readPath(head) };
+  const head = text.slice(0, LONGEST);
+  return { ...readWords(head), path: readPath(head) };
 }

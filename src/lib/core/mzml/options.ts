@@ -47,7 +47,8 @@ export type Inflate = (bytes: Uint8Array, expectedLength: number, maxLength: num
 
 /**
  * Decodes base64 text that a platform knows how to decode fast. Returns null for everything but whole quartets of the
- * alphabet of RFC 4648, section 4, with its padding: the reader then decodes it by itself, or says what is wrong.
+ * alphabet of RFC 4648, section 4, with its padding: the reader then decodes it by itself, or says what is wrong. The
+ * bytes need only be valid until the next call.
  */
 export type QuickBase64 = (text: string) => Uint8Array | null;
 

@@ -11,9 +11,9 @@ import type { Param } from './params';
 import type { ArrayText, ParamSet, PrecursorText, SpectrumRecord } from './record';
 import { decodeEntities } from './xml';
 
-/** Attributes that differ between spectra; every other one belongs to the text that must be the same. */
+/** Attributes that differ between spectra. Every other one, and what is empty, belongs to the text that must be the same. */
 const VALUE =
-  / (?:value|id|index|spectrumRef|externalSpectrumID|defaultArrayLength|arrayLength|encodedLength)="([^"]*)"/g;
+  / (?:value|id|index|spectrumRef|externalSpectrumID|defaultArrayLength|arrayLength|encodedLength)="([^"]+)"/g;
 const MARKER = '~value';
 const WHOLE_MARKER = /^~value(\d+)~$/;
 const QUOTE = 34;
