@@ -33,6 +33,12 @@ export function intensityTerm(relative: number): number {
   return WEIGHTS.explained + WEIGHTS.noiseExponent * Math.log(Math.max(1, relative / WEIGHTS.noiseCutOff));
 }
 
+/**
+ * A whole with many sub-formulas explains any m/z: an explanation that is one of n says less, by log n if the ions of
+ * a spectrum were independent, by a part of it as they are not.
+ */
+export const chanceTerm = (n: number): number => -WEIGHTS.chance * Math.log(Math.max(1, n));
+
 /** Terms of a formula that depend on nothing but itself. */
 export function compositionTerms(ion: IonFormula): ScoreTerms {
   const terms: ScoreTerms = {};
@@ -82,13 +88,9 @@ export function peakCandidates(
   return applyClaims(ions, peak, withChance(list));
 }
 
-/**
- * A whole with many sub-formulas explains any m/z: an explanation that is one of n says less, by log n if the ions of
- * a spectrum were independent, by a part of it as they are not (the number of competing formulas as the null model).
- */
 function withChance(list: PeakCandidate[]): PeakCandidate[] {
   if (list.length < 2) return list;
-  const chance = -WEIGHTS.chance * Math.log(list.length);
+  const chance = chanceTerm(list.length);
   return list.map((c) => ({ ...c, terms: { ...c.terms, 'chance match': chance }, score: c.score + chance }));
 }
 

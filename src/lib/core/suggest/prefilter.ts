@@ -2,7 +2,7 @@ import { nucleiMass } from '../chem';
 import { forEachFormula } from '../formula/solve';
 import { type IonSpace } from './ion-space';
 import { type LossScorer } from './loss-score';
-import { compositionTerms, intensityTerm, massErrorTerm, sumTerms } from './peak-candidates';
+import { chanceTerm, compositionTerms, intensityTerm, massErrorTerm, sumTerms } from './peak-candidates';
 import { type PrecursorCandidate } from './precursors';
 import { type StagePeak } from './stages';
 
@@ -60,14 +60,19 @@ export class Prefilter {
     const p2 = ion.w2 | g2;
     const { w0, w1, w2, score } = list;
     let best = -Infinity;
-    for (let i = 0; i < score.length && score[i] > best; i++) {
+    let fitting = 0;
+    for (let i = 0; i < score.length; i++) {
       if (((p0 - w0[i]) & g0) !== g0 || ((p1 - w1[i]) & g1) !== g1 || ((p2 - w2[i]) & g2) !== g2) continue;
-      if (list.kind === 'fragment') return score[i] + list.gain;
-      const deviation = list.target - (ion.mass - list.mass[i]);
-      if (Math.abs(deviation) > list.reach) continue;
-      best = Math.max(best, score[i] + massErrorTerm(deviation, list.sigma));
+      let own = score[i];
+      if (list.kind === 'loss') {
+        const deviation = list.target - (ion.mass - list.mass[i]);
+        if (Math.abs(deviation) > list.reach) continue;
+        own += massErrorTerm(deviation, list.sigma);
+      }
+      fitting++;
+      if (own > best) best = own;
     }
-    return best + list.gain;
+    return best + list.gain + chanceTerm(fitting);
   }
 
   private fragmentList(peak: StagePeak, mass: number): PeakList {
