@@ -65,4 +65,43 @@ describe('in a file', () => {
     const { scans } = await readText(mzmlText([{ length: 4, arrays: [array, intensity] }]));
     expect([...scans[0].peaks.mz]).toEqual([100, 101, 102, 103]);
   });
+
+  const forms = [
+    { name: 'pic', alone: 'MS:1002313', zlib: 'MS:1002747', data: 'ZGZWZmZ2', values: [100, 101, 102, 103], within: 0 },
+    {
+      name: 'slof',
+      alone: 'MS:1002314',
+      zlib: 'MS:1002748',
+      data: 'QMOIAAAAAABHtCnP794k6g==',
+      values: [100, 200, 300.00005, 400.0001],
+      within: 1
+    }
+  ];
+
+  it.each(forms)('reads $name as intensities, alone, followed by zlib and as two terms', async (form) => {
+    const { deflateSync } = await import('node:zlib');
+    const zlibbed = deflateSync(Buffer.from(form.data, 'base64')).toString('base64');
+    for (const [terms, text] of [
+      [[form.alone], form.data],
+      [[form.zlib], zlibbed],
+      [[form.alone, 'MS:1000574'], zlibbed]
+    ] as const) {
+      const array = { terms: ['MS:1000521', 'MS:1000515', ...terms], text };
+      const { scans } = await readText(mzmlText([{ length: 4, arrays: [plainArray('mz', [1, 2, 3, 4]), array] }]));
+      const { intensity } = scans[0].peaks;
+      expect(intensity).toHaveLength(4);
+      form.values.forEach((value, k) => expect(Math.abs(intensity[k] - value)).toBeLessThanOrEqual(form.within));
+    }
+  });
+
+  it.each(['MS:1003780', 'MS:1003784', 'MS:1003089'])(
+    'names the compression %s, which it cannot read',
+    async (term) => {
+      const array = { terms: ['MS:1000523', 'MS:1000514', term], text: mz };
+      await expect(readText(mzmlText([{ length: 4, arrays: [array, intensity] }]))).rejects.toMatchObject({
+        code: 'unsupported-compression',
+        message: expect.stringContaining(term)
+      });
+    }
+  );
 });
