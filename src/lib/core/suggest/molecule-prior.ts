@@ -4,13 +4,15 @@ import { heteroRatio } from './peak-candidates';
 import { WEIGHTS } from './weights';
 
 /**
- * How ordinary a neutral molecule's composition is, before any product ion is looked at: log odds of rare elements,
+ * How ordinary a neutral molecule's composition is, before any product ion is looked at: log odds of elements,
  * the published ratio limits as soft steps (Kind & Fiehn, BMC Bioinformatics 8:105, 2007, rules 4 and 5), and the
  * normal penalty on hetero atoms per carbon.
  */
 
 /** Log odds that a molecule holds the element at all, and of each further atom. */
-const RARE: Readonly<Record<string, readonly [first: number, further: number]>> = {
+const ODDS: Readonly<Record<string, readonly [first: number, further: number]>> = {
+  // Not rare, but each atom less usual than one of carbon or oxygen; without it formulas rich in N win by number.
+  N: [-0.3, -0.3],
   S: [-1.2, -0.8],
   P: [-2.2, -1.2],
   F: [-2.2, -0.5],
@@ -47,15 +49,15 @@ const OUTSIDE_EXTENDED = -6;
 export function moleculeTerms(ions: IonSpace, counts: ArrayLike<number>): ScoreTerms {
   const carbon = counts[0];
   const terms: ScoreTerms = {};
-  let rare = 0;
+  let odds = 0;
   let ratio = 0;
   for (let i = 1; i < counts.length; i++) {
     const symbol = ions.symbols[i];
-    const odds = RARE[symbol];
-    if (odds && counts[i] > 0) rare += odds[0] + (counts[i] - 1) * odds[1];
+    const own = ODDS[symbol];
+    if (own && counts[i] > 0) odds += own[0] + (counts[i] - 1) * own[1];
     ratio = Math.min(ratio, ratioStep(symbol, counts[i], carbon));
   }
-  if (rare < 0) terms['rare elements'] = rare;
+  if (odds < 0) terms['element odds'] = odds;
   if (ratio < 0) terms['element ratios'] = ratio;
   const z = (heteroRatio(counts) - WEIGHTS.heteroMean) / WEIGHTS.heteroDeviation;
   if (z > 0) terms['hetero atoms per carbon'] = -(z * z) / 2;

@@ -9,7 +9,7 @@ export const WEIGHTS = {
   /** how much narrower mass errors are judged within one ion than between precursor formulas. */
   massEmphasis: 14,
   /** reward of explaining a peak at all: log odds that a peak above the cut-off is signal. */
-  explained: 0,
+  explained: 0.3,
   /** noise intensities follow a Pareto law; its exponent. */
   noiseExponent: 0.6,
   /** relative intensity at which noise ends to be certain. */
