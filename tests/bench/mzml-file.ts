@@ -2,17 +2,7 @@
 import { createHash } from 'node:crypto';
 import { closeSync, openSync, writeSync } from 'node:fs';
 import { deflateSync } from 'node:zlib';
-
-/** Marsaglia's xorshift (J. Stat. Softw. 8(14), 2003), 32 bits; numbers from 0 to 1. */
-export function seeded(seed: number): () => number {
-  let x = seed | 0 || 1;
-  return () => {
-    x ^= x << 13;
-    x ^= x >>> 17;
-    x ^= x << 5;
-    return (x >>> 0) / 2 ** 32;
-  };
-}
+import { seeded } from './seeded';
 
 interface Arrays {
   count: number;

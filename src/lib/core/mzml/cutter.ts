@@ -1,6 +1,7 @@
 /** Cuts a stream of bytes into the head of the file and its spectra, without reading more than the tags. */
 import { CoreError } from '../errors';
 import { ByteWindow } from './byte-window';
+import { declaredDecoder } from './declared-encoding';
 import { IndexCheck } from './index-check';
 import type { ByteText, ReadLimits, StreamingHash } from './options';
 import type { BinaryText, SpectrumRecord } from './record';
@@ -389,18 +390,5 @@ export class Cutter {
       { byte: tag?.start ?? 0, scan: null },
       'Convert the original data to mzML 1.1 and use that file.'
     );
-  }
-}
-
-/** A decoder for the encoding that the XML declaration names; UTF-8 when there is none. */
-function declaredDecoder(prolog: Uint8Array): TextDecoder {
-  const text = new TextDecoder('iso-8859-1').decode(prolog.subarray(0, 400));
-  const label = /<\?xml[^>]*\bencoding\s*=\s*["']([^"']{1,40})["']/.exec(text)?.[1] ?? 'utf-8';
-  // UTF-16 was transcoded before it came here; the declaration still names it.
-  const name = /^(utf-?16|ucs-?2|iso-10646)/i.test(label) ? 'utf-8' : label;
-  try {
-    return new TextDecoder(name);
-  } catch {
-    throw new CoreError('xml', `The text encoding "${label}" is not known`, { byte: 0, scan: null });
   }
 }
