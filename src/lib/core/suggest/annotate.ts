@@ -56,6 +56,8 @@ const leftOpen = (ion: AnnotatedIon): AnnotatedIon => ({
 /** Fewer unexplained peaks than this tell nothing of the noise. */
 const FEWEST_NOISE_PEAKS = 8;
 const NOISE_QUANTILE = 0.9;
+/** Noise has a long tail: this many times the quantile it still reaches. */
+const NOISE_REACH = 2;
 
 /** A peak, and whether any sub-formula of the isolated ion fits it. */
 type Explained = Pick<StagePeak, 'spectrum' | 'intensity'> & { explained: boolean };
@@ -72,7 +74,7 @@ export function noiseLevels(peaks: readonly Explained[]): Map<number, number> {
     const noise = own.filter((peak) => !peak.explained).map((peak) => peak.intensity);
     if (noise.length < FEWEST_NOISE_PEAKS) continue;
     noise.sort((a, b) => a - b);
-    const level = noise[Math.floor(NOISE_QUANTILE * (noise.length - 1))];
+    const level = NOISE_REACH * noise[Math.floor(NOISE_QUANTILE * (noise.length - 1))];
     const fitting = own.filter((peak) => peak.explained && peak.intensity <= level).length;
     if (fitting <= noise.length) levels.set(spectrum, level);
   }
