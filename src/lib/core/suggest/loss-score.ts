@@ -1,3 +1,4 @@
+import { naturalLog } from './logarithm';
 import { commonLoss, isImplausibleLoss } from '../chem';
 import { type ScoreTerms } from '../model';
 import { type IonSpace } from './ion-space';
@@ -48,5 +49,5 @@ export class LossScorer {
 
 /** Reward reduction for large losses, log(1 − m(loss)/m(root)) (Bioinformatics 24, i49, 2008). */
 export function lossMassTerm(lossMass: number, rootMass: number): number {
-  return Math.log(Math.max(0.02, 1 - lossMass / rootMass));
+  return naturalLog(Math.max(0.02, 1 - lossMass / rootMass));
 }

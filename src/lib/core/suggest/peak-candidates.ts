@@ -1,3 +1,4 @@
+import { naturalLog } from './logarithm';
 import { nucleiMass } from '../chem';
 import { forEachFormula, type FormulaSpace } from '../formula/solve';
 import { type ScoreTerms } from '../model';
@@ -30,14 +31,14 @@ export function massErrorTerm(deviation: number, sigma: number): number {
 
 /** Gain of explaining a peak rather than calling it noise, whose intensities follow a Pareto law. */
 export function intensityTerm(relative: number): number {
-  return WEIGHTS.explained + WEIGHTS.noiseExponent * Math.log(Math.max(1, relative / WEIGHTS.noiseCutOff));
+  return WEIGHTS.explained + WEIGHTS.noiseExponent * naturalLog(Math.max(1, relative / WEIGHTS.noiseCutOff));
 }
 
 /**
  * A whole with many sub-formulas explains any m/z: an explanation that is one of n says less, by log n if the ions of
  * a spectrum were independent, by a part of it as they are not.
  */
-export const chanceTerm = (n: number): number => -WEIGHTS.chance * Math.log(Math.max(1, n));
+export const chanceTerm = (n: number): number => -WEIGHTS.chance * naturalLog(Math.max(1, n));
 
 /** Terms of a formula that depend on nothing but itself. */
 export function compositionTerms(ion: IonFormula): ScoreTerms {
