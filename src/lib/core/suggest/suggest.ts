@@ -40,6 +40,8 @@ const FINAL_UNIT: SolverLimits = { maxPeaks: 400, maxCandidates: 24, maxWork: 30
 const OVERVIEW: SolverLimits = { maxPeaks: 100, maxCandidates: 6, maxWork: 0 };
 /** Precursor candidates whose full trees are computed. */
 const FULL_TREES = 100;
+/** The same for multiply charged ions, whose trees are costly and whose isotope pattern tells more beforehand. */
+const FULL_TREES_OF_MANY_CHARGES = 30;
 
 /**
  * Proposes formulas for a whole tree: ranks the precursor's formulas by the best tree that each allows over all
@@ -209,7 +211,8 @@ class Suggester {
     all: PrecursorCandidate[],
     window: number
   ): PrecursorCandidate[] {
-    if (all.length <= FULL_TREES) return all;
+    const most = this.charge === 1 ? FULL_TREES : FULL_TREES_OF_MANY_CHARGES;
+    if (all.length <= most) return all;
     const peaks = this.root.peaks
       .filter((p) => p.role === 'product')
       .sort((a, b) => b.relative - a.relative || a.mz - b.mz)
@@ -224,10 +227,8 @@ class Suggester {
       return { candidate, score: candidate.prior + (filter?.score(candidate) ?? 0) };
     });
     rated.sort((a, b) => b.score - a.score || a.candidate.ion.key - b.candidate.ion.key);
-    this.notes.push(
-      `Full trees were computed for the ${FULL_TREES} most promising of ${all.length} precursor formulas.`
-    );
-    return rated.slice(0, FULL_TREES).map((r) => r.candidate);
+    this.notes.push(`Full trees were computed for the ${most} most promising of ${all.length} precursor formulas.`);
+    return rated.slice(0, most).map((r) => r.candidate);
   }
 
   private finish(ions: IonSpace, losses: LossScorer, ranked: PrecursorCandidate[]): Suggestion {
