@@ -226,13 +226,11 @@ export class Annotator {
 
   /** The best of the isolated ion and the chosen ions of the stage as the origin of a candidate. */
   private attach(node: StageNode, result: StageResult, vertex: StageVertex): Attachment {
-    const from = (ion: IonFormula, charge: number, mz: number, measured: boolean): Attachment => ({
-      ...this.solver.edgeTerms(result.ion, charge, ion, vertex.candidate),
-      mz,
-      ion,
-      charge,
-      measured
-    });
+    const from = (ion: IonFormula, charge: number, mz: number, measured: boolean): Attachment => {
+      const { loss, terms } = this.solver.edgeTerms(result.ion, charge, ion, vertex.candidate);
+      // What was lost before water was taken up is no difference of the two ions, so it is not called their loss.
+      return { loss: vertex.candidate.water ? 0 : loss, terms, mz, ion, charge, measured };
+    };
     let best = from(result.ion, result.charge, node.mz, true);
     let most = sumTerms(best.terms);
     for (const { from: index, weight } of vertex.edges) {

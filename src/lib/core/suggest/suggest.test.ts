@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { spectrum, treeOf } from '../../../../tests/helpers/assembled-trees';
 import { ionIsotopePeaks } from '../isotope';
-import { ionMz, parseElementRanges, parseFormula } from '../chem';
+import { add, formatFormula, ionMz, parseElementRanges, parseFormula } from '../chem';
 import { CoreError } from '../errors';
 import { type SuggestOptions } from '../model';
 import { defaultSuggestOptions, suggest } from './index';
@@ -142,6 +142,21 @@ describe('suggest with a known formula', () => {
     ).spectra;
     expect(ions[1]).toMatchObject({ formula: 'C6H8NO', loss: null });
     expect(ions[1].terms['water adduct']).toBeLessThan(0);
+  });
+
+  it('names no loss that is not the difference of the two ions', () => {
+    // C6H6NO2S+ (m/z 156) less SO2 and with water is C6H8NO+: neither SO2 nor anything else is what 156 has more.
+    const stages = [
+      spectrum({ path: [256], analyser: 'ion-trap', peaks: [[156, 100]] }),
+      spectrum({ path: [256, 156], analyser: 'ion-trap', peaks: [[110.1, 100]] })
+    ];
+    const known = options({ formula: 'C9H9N3O2S2', adducts: ['[M+H]+'] });
+    const [, [ion]] = suggest(treeOf('positive', stages), known).spectra;
+    for (const { formula, loss } of ion.alternatives) {
+      if (loss === null) continue;
+      expect(formatFormula(add(parseFormula(formula), parseFormula(loss)))).toBe(ion.fromFormula);
+    }
+    expect(ion.alternatives.find(({ formula }) => formula === 'C6H8NO')?.loss).toBeNull();
   });
 });
 
